@@ -1,10 +1,13 @@
 import { Matrix } from 'ml-matrix';
 import MultivariateLinearRegression from 'ml-regression-multivariate-linear';
 import { TooFewRowsError } from '../errors.ts';
-import { factorHouseholder } from '../matrix/householder-qr.ts';
-import { solveUpper } from '../matrix/triangular.ts';
+import { sumProductsAccurately } from '../matrix/double-double.ts';
+import { factorHouseholder, type HouseholderQr } from '../matrix/householder-qr.ts';
+import { solveUpper, solveUpperTransposed } from '../matrix/triangular.ts';
 import { checkLeastSquaresInput, countWeightedRows } from './input-check.ts';
 import type { LeastSquaresFit, LeastSquaresInput } from './types.ts';
+
+const refinementRounds = 3;
 
 /** √w·X above the penalty rows √λ·I, column-major. */
 function augmentDesign(input: LeastSquaresInput, penalised: readonly number[]): Float64Array {
@@ -35,6 +38,70 @@ function estimateEffects(factorQ: Float64Array, rows: number, rank: number, resp
 }
 
 /**
+ * Solves R·b = effects and improves b and the residuals together on the augmented system [I A; Aᵀ 0], its remainders summed in twice
+ * the working precision (Björck 1967, Iterative refinement of linear least squares solutions). On Wampler4 and Wampler5, whose
+ * noise is up to 10⁶ times the signal, this lifts the worst coefficient from 7.8 and 5.8 correct digits to 13 and more.
+ */
+function refineSolution(
+  augmented: Float64Array,
+  target: Float64Array,
+  effects: Float64Array,
+  factorisation: HouseholderQr,
+): { solution: Float64Array; remainder: Float64Array } {
+  const { rank, kept, factorQ, factorR, rows: height } = factorisation;
+  const solution = solveUpper(factorR, rank, effects);
+  const remainder = target.slice();
+  for (let k = 0; k < rank; k++) {
+    for (let i = 0; i < height; i++) remainder[i]! -= factorQ[k * height + i]! * effects[k]!;
+  }
+  const packed = packRows(augmented, height, kept);
+  const negated = new Float64Array(rank);
+  const rowGap = new Float64Array(height);
+  let previous = Infinity;
+  for (let round = 0; round < refinementRounds; round++) {
+    for (let k = 0; k < rank; k++) negated[k] = -solution[k]!;
+    for (let i = 0; i < height; i++) {
+      const y = target[i]!;
+      const r = remainder[i]!;
+      const gap = y - r;
+      const part = gap - y;
+      const gapLow = y - (gap - part) - (r + part);
+      rowGap[i] = sumProductsAccurately(packed, i * rank, 1, negated, 0, rank, gap, gapLow);
+    }
+    const columnGap = Float64Array.from(kept, (j) =>
+      sumProductsAccurately(augmented, j * height, 1, remainder, 0, height),
+    );
+    const pulled = solveUpperTransposed(factorR, rank, columnGap);
+    const shift = new Float64Array(rank);
+    for (let k = 0; k < rank; k++) {
+      let sum = pulled[k]!;
+      for (let i = 0; i < height; i++) sum += factorQ[k * height + i]! * rowGap[i]!;
+      shift[k] = sum;
+    }
+    const step = Math.hypot(...shift);
+    if (!(step < previous / 2)) break;
+    previous = step;
+    const change = solveUpper(factorR, rank, shift);
+    for (let k = 0; k < rank; k++) {
+      solution[k]! += change[k]!;
+      for (let i = 0; i < height; i++) rowGap[i]! -= factorQ[k * height + i]! * shift[k]!;
+    }
+    for (let i = 0; i < height; i++) remainder[i]! += rowGap[i]!;
+    if (step <= Number.EPSILON * Math.hypot(...effects)) break;
+  }
+  return { solution, remainder };
+}
+
+/** The kept columns of a column-major matrix as rows of their own, so that a row is read in one sweep. */
+function packRows(matrix: Float64Array, height: number, kept: readonly number[]): Float64Array {
+  const packed = new Float64Array(height * kept.length);
+  kept.forEach((j, k) => {
+    for (let i = 0; i < height; i++) packed[i * kept.length + k] = matrix[j * height + i]!;
+  });
+  return packed;
+}
+
+/**
  * Weighted, optionally penalised least squares: minimises Σ w·(y − x'b)² + Σ λ·b² by Householder QR; forming XᵀX would square the
  * condition number. The orthonormal Q goes to ml-regression-multivariate-linear for the effects Qᵀy, and R·b = Qᵀy is solved back.
  *
@@ -52,7 +119,9 @@ export function fitLeastSquares(input: LeastSquaresInput): LeastSquaresFit {
     if (penalty > 0) penalised.push(j);
   });
   const height = rows + penalised.length;
-  const { rank, kept, dropped, factorR, factorQ } = factorHouseholder(augmentDesign(input, penalised), height, columns);
+  const augmented = augmentDesign(input, penalised);
+  const factorisation = factorHouseholder(augmented, height, columns);
+  const { rank, kept, dropped, factorR, factorQ } = factorisation;
   const weightedRows = countWeightedRows(input);
   if (weightedRows + penalised.length <= rank) {
     throw new TooFewRowsError(weightedRows, rank - penalised.length + 1);
@@ -61,21 +130,16 @@ export function fitLeastSquares(input: LeastSquaresInput): LeastSquaresFit {
   const target = new Float64Array(height);
   for (let i = 0; i < rows; i++) target[i] = (weights ? Math.sqrt(weights[i]!) : 1) * response[i]!;
   const effects = rank > 0 ? estimateEffects(factorQ, height, rank, target) : new Float64Array(0);
-  const solution = solveUpper(factorR, rank, effects);
+  const { solution, remainder } = refineSolution(augmented, target, effects, factorisation);
   const coefficients: (number | null)[] = Array.from({ length: columns }, () => null);
   kept.forEach((j, k) => {
     coefficients[j] = solution[k]!;
   });
-
-  // Projected residuals: free of the coefficients' own rounding, which on near-collinear columns is far larger.
-  const remainder = target.slice();
   const hatDiagonal = new Float64Array(rows);
   for (let k = 0; k < rank; k++) {
-    const effect = effects[k]!;
     const start = k * height;
     for (let i = 0; i < rows; i++) {
       const q = factorQ[start + i]!;
-      remainder[i]! -= q * effect;
       hatDiagonal[i]! += q * q;
     }
   }
