@@ -17,6 +17,8 @@ export type SignIn = z.infer<typeof SignIn>;
 const Installation = z.object({
   port: z.number().int().nullable(),
   rolePasswords: z.record(z.enum(databaseRoles), z.string().min(20)),
+  /** The database that the last start used; the next one goes on with it. */
+  lastDatabase: z.string().nullable().default(null),
   /** The demo people by database; their passwords are printed at every start. */
   demoSignIns: z.record(z.string(), z.array(SignIn)),
 });
@@ -72,6 +74,7 @@ export function loadInstallation(folder: string): Installation {
     rolePasswords: Object.fromEntries(
       databaseRoles.map((role) => [role, drawSecret()]),
     ) as Installation['rolePasswords'],
+    lastDatabase: null,
     demoSignIns: {},
   };
   saveInstallation(folder, drawn);
