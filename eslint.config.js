@@ -41,6 +41,7 @@ export default tseslint.config(
       '@typescript-eslint/no-non-null-assertion': 'off',
       '@typescript-eslint/prefer-for-of': 'off',
       eqeqeq: 'error',
+      'no-empty-pattern': ['error', { allowObjectPatternsAsParameters: true }],
       'no-console': 'error',
     },
   },

@@ -2,10 +2,7 @@ import { spawnSync } from 'node:child_process';
 import { existsSync } from 'node:fs';
 import { findPostgresBinaries } from './postgres-binaries.ts';
 import { PlainFailure } from './plain-failure.ts';
-
-export const chromiumPath = process.env.FAIRWEEK_CHROMIUM ?? '/usr/bin/chromium';
-export const officePath = process.env.FAIRWEEK_SOFFICE ?? '/usr/bin/soffice';
-export const systemPythonPath = process.env.FAIRWEEK_PYTHON ?? '/usr/bin/python3';
+import { chromiumPath, officePath, systemPythonPath } from './system-programs.ts';
 
 interface SystemPackage {
   /** Debian's name. */

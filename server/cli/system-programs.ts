@@ -1,0 +1,4 @@
+/** Programs of Debian's packages that tests run; another system names its own by these variables. */
+export const chromiumPath = process.env.FAIRWEEK_CHROMIUM ?? '/usr/bin/chromium';
+export const officePath = process.env.FAIRWEEK_SOFFICE ?? '/usr/bin/soffice';
+export const systemPythonPath = process.env.FAIRWEEK_PYTHON ?? '/usr/bin/python3';
