@@ -1,6 +1,12 @@
-import type { CalendarHoliday, CalendarPromotion } from '../../../shared/contracts/calendar.ts';
-import type { HolidayWeek, PlannedWeek } from '../../forecasting/types.ts';
-import type { Tx } from '../../lib/database.ts';
+import type { CalendarPromotion, CalendarView } from '../../../shared/contracts/calendar.ts';
+import { addWeeks, listWeeks, startOfTradingWeek, toIsoDate, type Weekday } from '../../../shared/domain/weeks.ts';
+import type { PlannedWeek } from '../../forecasting/types.ts';
+import { demandRight, scopeOf, type Actor } from '../../lib/authorise.ts';
+import { inTransaction, type Database, type Tx } from '../../lib/database.ts';
+import { ProblemError } from '../../lib/problem.ts';
+import * as repository from './calendar.repository.ts';
+import { groupPromotionWeeks } from './promotion-runs.ts';
+import { listEventDays, listPublicHolidays, type HolidayDay } from './public-holidays.ts';
 
 /** What the calendar holds for one series in the weeks asked for; weeks without a promotion and without a planned regular price are left out. */
 export interface PlannedSeries {
@@ -9,29 +15,145 @@ export interface PlannedSeries {
   planned: PlannedWeek[];
 }
 
-export declare function loadPlannedWeeks(
+/**
+ * Planned promotions and regular prices in force, by series, in `weeks` weeks from firstWeek on. A regular price holds from its week until the
+ * next one; one that sales with a known regular price have overtaken is left out. Series without anything planned are left out.
+ */
+export async function loadPlannedWeeks(
   tx: Tx,
   itemIds: readonly number[],
   locationIds: readonly number[],
   firstWeek: string,
   weeks: number,
-): Promise<PlannedSeries[]>;
+): Promise<PlannedSeries[]> {
+  if (itemIds.length === 0 || locationIds.length === 0 || weeks <= 0) return [];
+  const window = { itemIds, locationIds, firstWeek, lastWeek: addWeeks(firstWeek, weeks - 1) };
+  const promotions = await repository.selectPromotionWeeks(tx, window);
+  const prices = await repository.selectPlannedPrices(tx, window);
 
-/** Promotions in force in the window, equal terms joined over items, locations and weeks. */
-export declare function loadPromotions(
+  const series = new Map<string, { itemId: number; locationId: number; byWeek: Map<string, PlannedWeek> }>();
+  const at = ({ itemId, locationId }: { itemId: number; locationId: number }) => {
+    const key = `${itemId}|${locationId}`;
+    const found = series.get(key) ?? { itemId, locationId, byWeek: new Map<string, PlannedWeek>() };
+    series.set(key, found);
+    return found.byWeek;
+  };
+  for (const row of promotions) {
+    at(row).set(row.weekStart, {
+      weekStart: row.weekStart,
+      price: row.price ?? Number.NaN,
+      regularPrice: Number.NaN,
+      depth: row.depth ?? Number.NaN,
+      feature: row.feature,
+      display: row.display,
+      mechanics: row.mechanics,
+    });
+  }
+  const weekStarts = listWeeks(firstWeek, weeks);
+  prices.forEach((row, index) => {
+    const next = prices[index + 1];
+    const end = next?.itemId === row.itemId && next.locationId === row.locationId ? next.weekStart : null;
+    const byWeek = at(row);
+    for (const weekStart of weekStarts) {
+      if (weekStart < row.weekStart || (end !== null && weekStart >= end)) continue;
+      const planned = byWeek.get(weekStart) ?? planNothing(weekStart);
+      byWeek.set(weekStart, { ...planned, regularPrice: row.regularPrice });
+    }
+  });
+  return [...series.values()]
+    .filter(({ byWeek }) => byWeek.size > 0)
+    .map(({ itemId, locationId, byWeek }) => ({
+      itemId,
+      locationId,
+      planned: [...byWeek.values()].sort((a, b) => a.weekStart.localeCompare(b.weekStart)),
+    }));
+}
+
+function planNothing(weekStart: string): PlannedWeek {
+  return {
+    weekStart,
+    price: Number.NaN,
+    regularPrice: Number.NaN,
+    depth: Number.NaN,
+    feature: 0,
+    display: 0,
+    mechanics: {},
+  };
+}
+
+/** Promotions in force in the window, equal terms joined over weeks, locations and items. */
+export async function loadPromotions(
   tx: Tx,
   itemIds: readonly number[],
   locationIds: readonly number[],
   firstWeek: string,
   weeks: number,
-): Promise<CalendarPromotion[]>;
+): Promise<CalendarPromotion[]> {
+  if (itemIds.length === 0 || locationIds.length === 0 || weeks <= 0) return [];
+  const lastWeek = addWeeks(firstWeek, weeks - 1);
+  const rows = await repository.selectPromotionWeeks(tx, { itemIds, locationIds, firstWeek, lastWeek });
+  return groupPromotionWeeks(rows).map(({ price: _price, ...promotion }) => promotion);
+}
 
-/** Public holidays of the country in the settings from `first` to `last` (days), by trading week. Empty without a country. */
-export declare function holidaysBetween(
-  tx: Tx,
-  first: string,
-  last: string,
-): Promise<(HolidayWeek & CalendarHoliday)[]>;
+/**
+ * Public holidays of the country in the settings, and own events day by day, from `first` to `last` (days, both included) with the trading week that
+ * holds each. Without a country: own events only.
+ */
+export async function holidaysBetween(tx: Tx, first: string, last: string): Promise<HolidayDay[]> {
+  const { country, firstWeekday } = await repository.selectHolidaySettings(tx);
+  const weekday = (firstWeekday ?? 1) as Weekday;
+  const holidays = country === '' ? [] : listPublicHolidays(country, first, last, weekday);
+  const events = (await repository.selectEvents(tx, first, last))
+    .flatMap((event) => listEventDays(event, weekday))
+    .filter(({ date }) => date >= first && date <= last);
+  return [...holidays, ...events].sort((a, b) => a.date.localeCompare(b.date));
+}
 
 /** The newest revision of the calendar; null before the first. */
-export declare function currentCalendarRevision(tx: Tx): Promise<number | null>;
+export function currentCalendarRevision(tx: Tx): Promise<number | null> {
+  return repository.selectCurrentRevision(tx);
+}
+
+/** The calendar of a category; without a first week, from four weeks before the seam on. */
+export function readCalendar(
+  database: Database,
+  actor: Actor,
+  query: { categoryId: number; firstWeek: string | null; weeks: number },
+): Promise<CalendarView> {
+  return inTransaction(database, async (tx) => {
+    const range = await repository.selectRange(tx, query.categoryId, scopeOf(actor, 'see-category'));
+    const head = range[0];
+    if (!head) throw new ProblemError('not-found', 'There is no such category, or you have no access to it.');
+    demandRight(actor, 'see-category', query.categoryId);
+    const lines = range.flatMap(({ lineId, lineName, items }) =>
+      lineId === null || lineName === null ? [] : [{ id: lineId, name: lineName, items }],
+    );
+    const itemIds = lines.flatMap(({ items }) => items.map(({ id }) => id));
+    const { firstWeekday } = await repository.selectHolidaySettings(tx);
+    const firstWeek = startOfTradingWeek(
+      query.firstWeek ?? (await chooseFirstWeek(tx, itemIds)),
+      (firstWeekday ?? 1) as Weekday,
+    );
+    const lastWeek = addWeeks(firstWeek, query.weeks - 1);
+    const locations = await repository.selectLocations(tx, itemIds);
+    const locationIds = locations.map(({ id }) => id);
+    return {
+      category: { id: head.categoryId, name: head.categoryName },
+      firstWeek,
+      weeks: query.weeks,
+      lines,
+      locations,
+      promotions: await loadPromotions(tx, itemIds, locationIds, firstWeek, query.weeks),
+      prices: await repository.selectPriceChanges(tx, { itemIds, firstWeek, lastWeek }),
+      holidays: (await holidaysBetween(tx, firstWeek, addWeeks(lastWeek, 1))).filter(
+        ({ weekStart }) => weekStart >= firstWeek && weekStart <= lastWeek,
+      ),
+      revision: await currentCalendarRevision(tx),
+    };
+  });
+}
+
+async function chooseFirstWeek(tx: Tx, itemIds: readonly number[]): Promise<string> {
+  const last = await repository.selectLastSalesWeek(tx, itemIds);
+  return last === null ? toIsoDate(Math.floor(Date.now() / 86_400_000)) : addWeeks(last, -3);
+}
