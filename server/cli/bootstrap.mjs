@@ -78,5 +78,12 @@ for (const signal of ['SIGINT', 'SIGTERM', 'SIGHUP']) {
     if (!(signal === 'SIGINT' && isTerminal)) child.kill(signal);
   });
 }
+// npm that is killed outright takes its shell with it but not this process.
+if (process.env.npm_lifecycle_event) {
+  const parent = process.ppid;
+  setInterval(() => {
+    if (process.ppid !== parent) child.kill('SIGTERM');
+  }, 500).unref();
+}
 child.on('error', (error) => refuse(`The command could not be started: ${error.message}`));
 child.on('exit', (code, signal) => process.exit(signal ? 128 + (constants.signals[signal] ?? 0) : (code ?? 1)));
