@@ -1,0 +1,1 @@
+export { CalendarPage as Component } from '../../features/calendar/components/CalendarPage.tsx';

@@ -1,0 +1,1 @@
+export { LinePage as Component } from '../../features/lines/components/LinePage.tsx';

@@ -1,0 +1,1 @@
+export { PacksPage as Component } from '../../features/packs/components/PacksPage.tsx';

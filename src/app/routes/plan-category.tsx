@@ -1,0 +1,1 @@
+export { CategoryPlanPage as Component } from '../../features/plan/components/CategoryPlanPage.tsx';

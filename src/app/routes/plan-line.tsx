@@ -1,0 +1,1 @@
+export { LinePlanPage as Component } from '../../features/plan/components/LinePlanPage.tsx';

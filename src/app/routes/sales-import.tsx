@@ -1,0 +1,1 @@
+export { ImportPage as Component } from '../../features/sales/components/ImportPage.tsx';

@@ -1,0 +1,1 @@
+export { SalesPage as Component } from '../../features/sales/components/SalesPage.tsx';

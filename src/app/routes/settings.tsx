@@ -1,0 +1,1 @@
+export { SettingsPage as Component } from '../../features/settings/components/SettingsPage.tsx';

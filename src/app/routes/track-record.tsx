@@ -1,0 +1,1 @@
+export { TrackRecordPage as Component } from '../../features/track-record/components/TrackRecordPage.tsx';

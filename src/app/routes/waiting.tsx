@@ -1,0 +1,1 @@
+export { WaitingPage as Component } from '../../features/waiting/components/WaitingPage.tsx';

@@ -1,0 +1,46 @@
+export const shellTexts = {
+  skip: 'Skip to the page',
+  home: 'Fairweek, to Waiting',
+  places: 'Places',
+  place: {
+    waiting: 'Waiting',
+    sales: 'Sales',
+    calendar: 'Calendar',
+    plan: 'Plan',
+    'track-record': 'Track record',
+    packs: 'Packs',
+  },
+  entriesWait_one: '{{count}} entry waits',
+  entriesWait_other: '{{count}} entries wait',
+  category: 'Category in view: {{name}}',
+  noCategory: 'no category yet',
+  find: {
+    label: 'Find',
+    placeholder: 'item, line or promotion',
+    nothing: 'Nothing named like that in what you may see.',
+    results: 'Found',
+    line: 'line in {{category}}',
+    item: 'item of {{line}}',
+    promotion: 'promotion, {{weeks}}',
+    place: 'place',
+    category: 'category',
+  },
+  person: {
+    menu: 'You: {{name}}',
+    settings: 'Settings',
+    dark: 'Dark pages',
+    light: 'Light pages',
+    signOut: 'Sign out',
+  },
+  notFound: {
+    title: 'There is no such page',
+    detail: 'The address may be mistyped, or what it led to is gone or not yours to see.',
+    toWaiting: 'To Waiting',
+  },
+  crashed: {
+    title: 'This page stumbled',
+    detail:
+      'Nothing was changed by it. Load the page again; should it happen twice, tell your administrator what you did.',
+    reload: 'Load again',
+  },
+};
