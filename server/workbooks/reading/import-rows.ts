@@ -238,8 +238,7 @@ class RowReader {
   private readRow(): ImportRow {
     this.refuseDecoration();
     const weekStart = this.readWeek();
-    const item = this.readText('item');
-    if (item === undefined) this.refuse('item', 'item-missing', 'The row names no item.');
+    const item = this.readText('item') ?? this.refuse('item', 'item-missing', 'The row names no item.');
     const hasLocations = this.columns.of.has('location');
     const location = this.readText('location');
     if (hasLocations && location === undefined && this.options.kind === 'sales') {
@@ -249,7 +248,7 @@ class RowReader {
       sheet: this.row.sheet,
       row: this.row.row,
       weekStart,
-      item: item as string,
+      item,
       location: location ?? NO_LOCATION,
       mechanics: {},
     };
@@ -327,7 +326,7 @@ class RowReader {
       };
     }
     const weekStart = resolveWeekStart(read, form);
-    if (weekStart === 'off-weekday') {
+    if (weekStart === null) {
       const day = form.weekDateIs === 'first-day' ? form.firstWeekday : (form.firstWeekday + 6) % 7;
       const own = read.type === 'date' ? nameWeekday(weekdayOf(read.date)) : '';
       const edge = form.weekDateIs === 'first-day' ? 'first' : 'last';

@@ -244,7 +244,7 @@ function chooseYearNumber(evidence: FormEvidence, weekName: string, questions: O
   for (const cell of evidence.weekCells.values()) {
     const asMonth = readWeekCell(cell, { dateOrder: 'day-first', yearNumberIs: 'month', hasDatesFrom1904: false });
     const asWeek = readWeekCell(cell, { dateOrder: 'day-first', yearNumberIs: 'week', hasDatesFrom1904: false });
-    if (asMonth.type === 'label' && !/w/i.test(String(cell))) return 'week';
+    if (asMonth.type === 'label' && !(typeof cell === 'string' && /w/i.test(cell))) return 'week';
     if (asMonth.type === 'month' && asWeek.type === 'label') undecided += 1;
   }
   if (undecided === 0 || /\b(week|wk|yyyyww|yearweek)\b/.test(weekName)) return 'week';

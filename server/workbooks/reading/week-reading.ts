@@ -159,15 +159,14 @@ export function detectDateOrder(text: string): DateOrder | null {
   return Number(match[3]) > 12 ? 'month-first' : null;
 }
 
-/** First day of the trading week that a cell names, or `off-weekday` for a date that is not the first (or last) day of one. */
+/** First day of the trading week that a cell names; null for a date that is not the first (or last) day of one. */
 export function resolveWeekStart(
   cell: Extract<WeekCell, { type: 'label' | 'date' }>,
   trading: { firstWeekday: Weekday; weekDateIs: 'first-day' | 'last-day' },
-): string | 'off-weekday' {
+): string | null {
   if (cell.type === 'label') {
-    const start = parseWeekLabel(`${cell.year}-W${String(cell.week).padStart(2, '0')}`, trading.firstWeekday);
-    return start ?? 'off-weekday';
+    return parseWeekLabel(`${cell.year}-W${String(cell.week).padStart(2, '0')}`, trading.firstWeekday);
   }
   const start = trading.weekDateIs === 'first-day' ? cell.date : addDays(cell.date, -6);
-  return weekdayOf(start) === trading.firstWeekday ? start : 'off-weekday';
+  return weekdayOf(start) === trading.firstWeekday ? start : null;
 }
