@@ -41,7 +41,6 @@ const longestPauseMs = 30_000;
  */
 export async function startServices(environment: ServiceEnvironment, logFolder: string): Promise<Services> {
   mkdirSync(logFolder, { recursive: true });
-  await endOrphans(logFolder);
   const services = ['server', 'worker'].map((part): Service => ({
     name: part,
     script: part === 'server' ? 'server/main.ts' : 'server/worker.ts',
@@ -144,7 +143,8 @@ function writeProcessFile(logFolder: string, services: Service[]): void {
 }
 
 /** A command that was killed outright leaves its server and worker running; the next start ends them. */
-async function endOrphans(logFolder: string): Promise<void> {
+export async function endOrphans(logFolder: string): Promise<void> {
+  if (!existsSync(logFolder)) return;
   for (const file of readdirSync(logFolder)) {
     const parent = Number(/^processes-of-(\d+)\.json$/.exec(file)?.[1] ?? Number.NaN);
     if (Number.isNaN(parent) || isOurProcess(parent)) continue;

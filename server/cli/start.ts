@@ -16,7 +16,7 @@ import {
 import { ensureSystemPackages } from './debian-packages.ts';
 import { PlainFailure, runCommand } from './plain-failure.ts';
 import { findFreePort } from './ports.ts';
-import { startServices, type ServiceEnvironment, type Services } from './services.ts';
+import { endOrphans, startServices, type ServiceEnvironment, type Services } from './services.ts';
 
 const usage = `npm start [-- options]
   --demo        with the invented demo company (what a first start does by itself)
@@ -125,6 +125,8 @@ async function bringUp(options: Options, running: Running, stopping: Stopping): 
 
   const dataFolder = prepareDataFolder('start');
   const installation = loadInstallation(dataFolder);
+  const logFolder = join(dataFolder, 'logs');
+  await endOrphans(logFolder);
   const port = await findFreePort(options.port);
   const signIns = await provideDemo(target, installation, dataFolder, port);
   stopping.check();
@@ -135,7 +137,7 @@ async function bringUp(options: Options, running: Running, stopping: Stopping): 
   if (await buildClientIfChanged()) console.log('Browser part built.');
   stopping.check();
   console.log('Starting server and worker …');
-  running.services = await startServices(environment, join(dataFolder, 'logs'));
+  running.services = await startServices(environment, logFolder);
   await Promise.race([running.services.ready, stopping.asked]);
   stopping.check();
   announce(running.services.address, signIns, firstLink, options.port === port ? null : options.port);

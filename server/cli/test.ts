@@ -114,7 +114,7 @@ function runProgram(
     const child = spawn(join(projectFolder, 'node_modules', '.bin', program ?? ''), args, {
       cwd: projectFolder,
       stdio: ['ignore', 'inherit', 'inherit'],
-      env: { ...process.env, FORCE_COLOR: process.stdout.isTTY ? '1' : '0', ...environment },
+      env: { ...process.env, ...(process.stdout.isTTY ? {} : { NO_COLOR: '1' }), ...environment },
     });
     stopping.onStop = () => child.kill('SIGTERM');
     child.on('error', (error) => {
