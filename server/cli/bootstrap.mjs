@@ -10,9 +10,11 @@ import { fileURLToPath } from 'node:url';
 
 const cliFolder = dirname(fileURLToPath(import.meta.url));
 const projectFolder = dirname(dirname(cliFolder));
+const [command, ...options] = process.argv.slice(2);
 
 function refuse(sentence) {
   console.error(sentence);
+  if (command === 'test') console.log('\n0 passed, 1 failed');
   process.exit(1);
 }
 
@@ -59,7 +61,6 @@ function installPackages() {
   }
 }
 
-const [command, ...options] = process.argv.slice(2);
 const commandFile = join(cliFolder, `${command}.ts`);
 if (!command || !/^[a-z][a-z-]*$/.test(command) || !existsSync(commandFile)) {
   refuse(`There is no command “${command ?? ''}”. Try: npm start, npm test, npm run backtest.`);

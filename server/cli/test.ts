@@ -58,6 +58,17 @@ function chooseSuites(words: string[]): { chosen: readonly Suite[]; filters: str
 }
 
 async function main(): Promise<number> {
+  try {
+    return await runSuites();
+  } catch (error) {
+    // Whoever reads the last line alone must see that nothing was shown.
+    console.error(error instanceof PlainFailure ? `\n${error.message}` : error);
+    console.log('\n0 passed, 1 failed');
+    return 1;
+  }
+}
+
+async function runSuites(): Promise<number> {
   const { chosen, filters } = chooseSuites(process.argv.slice(2));
   const needsDatabase = chosen.some((suite) => suite.needsDatabase);
   if (needsDatabase) ensureSystemPackages('test');
