@@ -1,0 +1,22 @@
+import type { Column } from './column.ts';
+import type { LinePanel } from './line-panel.ts';
+
+/**
+ * Depth of the own price cut, as a positive share of ln price, one and two weeks earlier (stocking up: a dip) and one week ahead
+ * (waiting for an advertised cut). Signs: all three can only lower sales.
+ */
+export function buildAroundColumns(panel: LinePanel): Column[] {
+  const shifts = [
+    { name: 'cut one week earlier', weeks: -1 },
+    { name: 'cut two weeks earlier', weeks: -2 },
+    { name: 'cut one week ahead', weeks: 1 },
+  ];
+  return shifts.map(({ name, weeks }) => ({
+    name,
+    group: 'around',
+    hasOwnSlopes: false,
+    sign: -1,
+    priorSpread: 1,
+    values: panel.series.map((series) => series.lnDepth.map((_, t) => Math.max(0, -(series.lnDepth[t + weeks] ?? 0)))),
+  }));
+}

@@ -1,0 +1,79 @@
+import type { LinePanel } from '../features/line-panel.ts';
+import { nameSpecification, type Specification } from '../search/specification.ts';
+import type { Finding, FittedCoefficient, LineFit } from '../types.ts';
+import type { KeptFit } from './kept-fit.ts';
+import type { LineModel } from './line-model.ts';
+
+const NORMAL_97_5 = 1.959963984540054;
+
+/** What is kept and shown of a fit: the line's slopes with their errors clustered by week, and how well the rows are met. */
+export function reportFit(
+  panel: LinePanel,
+  specification: Specification,
+  model: LineModel,
+  kept: KeptFit,
+  influences: readonly Float64Array[],
+  scores: LineFit['scores'],
+  findings: readonly Finding[],
+): LineFit {
+  const columns = model.columns;
+  const coefficients = columns.map((column, k): FittedCoefficient => {
+    const estimate = kept.coefficients[k]!;
+    const standardError = Math.sqrt(influences.reduce((sum, influence) => sum + influence[k]! ** 2, 0));
+    return {
+      name: column.name,
+      group: column.group,
+      estimate,
+      standardError,
+      low95: estimate - NORMAL_97_5 * standardError,
+      high95: estimate + NORMAL_97_5 * standardError,
+    };
+  });
+  const { squares, total, weightSum, logLikelihood } = describeRows(model, kept);
+  const parameters = kept.leverages.reduce((sum, leverage) => sum + leverage, 0);
+  return {
+    specification: { name: nameSpecification(specification), isPoisson: panel.hasZeros, ...specification },
+    coefficients,
+    rows: kept.rows.length,
+    rank: kept.rank,
+    sigma: Math.sqrt(squares / weightSum / Math.max(1e-9, 1 - parameters / kept.rows.length)),
+    rSquared: total > 0 ? 1 - squares / total : 0,
+    aic: -2 * logLikelihood + 2 * (parameters + 1),
+    factorR: leadingTriangle(kept, columns.length),
+    scores,
+    findings,
+    seconds: 0,
+  };
+}
+
+/** Row sums of the fit in ln units within series, and the Gaussian log-likelihood under the row weights. */
+function describeRows(
+  model: LineModel,
+  kept: KeptFit,
+): { squares: number; total: number; weightSum: number; logLikelihood: number } {
+  const { rowWeights, target } = model.target;
+  const { moments } = model.estimate;
+  let squares = 0;
+  let total = 0;
+  let weightSum = 0;
+  let logLikelihood = 0;
+  kept.rows.forEach(({ series: s, week: t }, i) => {
+    const w = rowWeights[s]![t]!;
+    const residual = kept.residuals[i]!;
+    squares += w * residual ** 2;
+    total += w * (target[s]![t]! - moments[s]!.targetMean) ** 2;
+    weightSum += w;
+    logLikelihood -= 0.5 * (Math.log(2 * Math.PI) - Math.log(kept.weights[i]!) + kept.weights[i]! * residual ** 2);
+  });
+  return { squares, total, weightSum, logLikelihood };
+}
+
+/** Upper triangle of the leading block of R that belongs to the line's slopes, row by row. */
+function leadingTriangle(kept: KeptFit, columns: number): number[] {
+  const leading = kept.kept.filter((j) => kept.open[j]! < columns).length;
+  const triangle: number[] = [];
+  for (let i = 0; i < leading; i++) {
+    for (let j = i; j < leading; j++) triangle.push(kept.factorR[i * kept.rank + j]!);
+  }
+  return triangle;
+}

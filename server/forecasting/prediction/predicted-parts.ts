@@ -1,0 +1,68 @@
+import type { Column, ColumnGroup } from '../features/column.ts';
+import { PRICE_PAID } from '../features/own-columns.ts';
+import type { LinePanel } from '../features/line-panel.ts';
+import type { SeriesMoments } from '../fit/series-moments.ts';
+
+export type PartName = 'level' | ColumnGroup | 'recent level';
+
+export const partNames: readonly PartName[] = [
+  'level',
+  'price',
+  'promotion',
+  'around',
+  'neighbours',
+  'season',
+  'holiday',
+  'trend',
+  'recent level',
+];
+
+/** Groups whose part is told against the series' average week, so that the level is that of an ordinary week. */
+const AGAINST_AVERAGE: readonly ColumnGroup[] = ['price', 'neighbours', 'trend'];
+
+export interface PredictedSeries {
+  /** ln of the forecast per week of the horizon: the sum of the parts. */
+  linear: Float64Array;
+  parts: Record<PartName, Float64Array>;
+}
+
+/**
+ * ln forecast of one series over the horizon as a sum of named parts. Price and neighbours are told against the series' own average,
+ * promotion against none; with one slope for the price paid, the cut's share of it belongs to promotion.
+ */
+export function predictSeries(
+  panel: LinePanel,
+  s: number,
+  columns: readonly Column[],
+  slopes: Float64Array,
+  level: number,
+  moments: SeriesMoments,
+  recentLevel: (h: number) => number,
+): PredictedSeries {
+  const { horizon, pastWeeks } = panel;
+  const parts = Object.fromEntries(partNames.map((name) => [name, new Float64Array(horizon)])) as Record<
+    PartName,
+    Float64Array
+  >;
+  let reference = level;
+  columns.forEach((column, k) => {
+    const slope = slopes[k]!;
+    if (slope === 0) return;
+    const values = column.values[s]!;
+    const average = AGAINST_AVERAGE.includes(column.group) ? moments.columnMeans[k]! : 0;
+    reference += slope * average;
+    const part = parts[column.group];
+    const cut = column.name === PRICE_PAID ? panel.series[s]!.lnDepth : null;
+    for (let h = 0; h < horizon; h++) {
+      const t = pastWeeks + h;
+      const cutNow = cut ? Math.min(0, cut[t]!) : 0;
+      part[h]! += slope * (values[t]! - average - cutNow);
+      if (cutNow !== 0) parts.promotion[h]! += slope * cutNow;
+    }
+  });
+  parts.level.fill(reference);
+  for (let h = 0; h < horizon; h++) parts['recent level'][h] = recentLevel(h);
+  const linear = new Float64Array(horizon);
+  for (const name of partNames) for (let h = 0; h < horizon; h++) linear[h]! += parts[name][h]!;
+  return { linear, parts };
+}
