@@ -1,6 +1,5 @@
 import { createReadStream } from 'node:fs';
 import { open } from 'node:fs/promises';
-import { Readable } from 'node:stream';
 import Papa from 'papaparse';
 import { flattenBatches, type CellValue, type OpenedTable, type ReadingLimits, type TableRow } from './table.ts';
 import { UnreadableFileError } from './unreadable-file-error.ts';
@@ -8,7 +7,7 @@ import { UnreadableFileError } from './unreadable-file-error.ts';
 type Encoding = 'utf-8' | 'utf-16le' | 'utf-16be' | 'windows-1252';
 
 const SAMPLE_BYTES = 256 * 1024;
-const BATCH_ROWS = 1_000;
+const PIECE_BYTES = 128 * 1024;
 const DELIMITERS = [',', ';', '\t', '|'] as const;
 const SEPARATOR_LINE = /^sep=(.)\r?\n/i;
 
@@ -36,63 +35,64 @@ async function* streamRecords(
   form: { encoding: Encoding; delimiter: string; hasSeparatorLine: boolean },
   limits: ReadingLimits,
 ): AsyncGenerator<TableRow[]> {
-  let unbroken = 0;
-  const decode = async function* () {
-    const decoder = new TextDecoder(form.encoding);
-    let isFirst = true;
-    for await (const chunk of createReadStream(path, { highWaterMark: 128 * 1024 }) as AsyncIterable<Buffer>) {
-      let text = decoder.decode(chunk, { stream: true });
-      if (isFirst && form.hasSeparatorLine) text = text.replace(SEPARATOR_LINE, '');
-      isFirst = false;
-      unbroken += text.length;
-      if (unbroken > limits.unbrokenCharacters) throw buildUnclosedQuoteError();
-      if (text !== '') yield text;
-    }
-    const rest = decoder.decode();
-    if (rest !== '') yield rest;
-  };
-  const parser = Papa.parse(Papa.NODE_STREAM_INPUT, { delimiter: form.delimiter, skipEmptyLines: false });
-  const source = Readable.from(decode());
-  source.on('error', (error) => parser.destroy(error));
-  source.pipe(parser);
-
+  // Papa's own stream splits its whole buffer anew after each pause: 10 s for 40,000 rows. Its parser, fed piece by piece, takes 50 ms.
+  const parser = new Papa.Parser({ delimiter: form.delimiter, newline: '\n' });
   let rowNumber = form.hasSeparatorLine ? 1 : 0;
   let cellCount = 0;
-  let batch: TableRow[] = [];
+  let carried = '';
   try {
-    for await (const record of parser as AsyncIterable<string[]>) {
-      unbroken = 0;
-      rowNumber += 1;
-      const cells: CellValue[] = record.map((text) => (text.trim() === '' ? null : text));
-      while (cells.length > 0 && cells.at(-1) === null) cells.pop();
-      if (cells.length === 0) continue;
-      cellCount += cells.length;
-      if (cells.length > limits.columns || cellCount > limits.cells) {
-        throw new UnreadableFileError(
-          'too-large',
-          `The file has more than ${limits.columns} columns or ${Math.round(limits.cells / 1e6)} million cells. Split it by year or by category.`,
-        );
+    for await (const { text, isLast } of decodeLines(path, form)) {
+      const piece = carried + text;
+      const { data, meta } = parser.parse(piece, 0, !isLast) as Papa.ParseResult<string[]>;
+      carried = isLast ? '' : piece.slice(meta.cursor);
+      if (carried.length > limits.unbrokenCharacters) throw buildUnclosedQuoteError();
+      const batch: TableRow[] = [];
+      for (const record of data) {
+        rowNumber += 1;
+        const cells: CellValue[] = record.map((cell) => (cell.trim() === '' ? null : cell));
+        while (cells.length > 0 && cells.at(-1) === null) cells.pop();
+        if (cells.length === 0) continue;
+        cellCount += cells.length;
+        if (cells.length > limits.columns || cellCount > limits.cells) {
+          throw new UnreadableFileError(
+            'too-large',
+            `The file has more than ${limits.columns} columns or ${Math.round(limits.cells / 1e6)} million cells. Split it by year or by category.`,
+          );
+        }
+        batch.push({ sheet: '', row: rowNumber, cells });
       }
-      batch.push({ sheet: '', row: rowNumber, cells });
-      if (batch.length >= BATCH_ROWS) {
-        yield batch;
-        batch = [];
-      }
+      if (batch.length > 0) yield batch;
     }
-    if (batch.length > 0) yield batch;
   } catch (error) {
     if (error instanceof UnreadableFileError) throw error;
     throw new UnreadableFileError(
       'damaged',
       'The file can’t be read to its end. Export it again and send the new file.',
-      {
-        cause: error,
-      },
+      { cause: error },
     );
-  } finally {
-    source.destroy();
-    parser.destroy();
   }
+}
+
+/** Pieces of the file as text, with one kind of line end; the last piece says so. */
+async function* decodeLines(
+  path: string,
+  form: { encoding: Encoding; hasSeparatorLine: boolean },
+): AsyncGenerator<{ text: string; isLast: boolean }> {
+  const decoder = new TextDecoder(form.encoding);
+  let isFirst = true;
+  let heldBack = '';
+  for await (const chunk of createReadStream(path, { highWaterMark: PIECE_BYTES }) as AsyncIterable<Buffer>) {
+    let text = heldBack + decoder.decode(chunk, { stream: true });
+    if (isFirst && form.hasSeparatorLine) text = text.replace(SEPARATOR_LINE, '');
+    isFirst = false;
+    heldBack = text.endsWith('\r') ? '\r' : '';
+    yield { text: unifyLineEnds(heldBack === '' ? text : text.slice(0, -1)), isLast: false };
+  }
+  yield { text: unifyLineEnds(heldBack + decoder.decode()), isLast: true };
+}
+
+function unifyLineEnds(text: string): string {
+  return text.includes('\r') ? text.replace(/\r\n?/g, '\n') : text;
 }
 
 function buildUnclosedQuoteError(): UnreadableFileError {

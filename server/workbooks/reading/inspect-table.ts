@@ -149,7 +149,12 @@ export async function proposeForm(
     else if (read.type === 'month') months += 1;
     else if (read.type === 'label') labels += 1;
   }
-  const trading = chooseTradingWeek([...dates], weekName, context.fixedFirstWeekday, questions);
+  const trading = chooseTradingWeek(
+    labels > dates.size ? [] : [...dates],
+    weekName,
+    context.fixedFirstWeekday,
+    questions,
+  );
   return {
     form: { decimalSign, dateOrder, yearNumberIs, ...trading },
     questions,
