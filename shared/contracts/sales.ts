@@ -43,6 +43,8 @@ export const ImportMapping = z.object({
       meaning: ColumnMeaning,
       /** Only of a mechanic: its name, e.g. `coupon`. */
       mechanicName: z.string().optional(),
+      /** Only of shares: whether bare figures are fractions or percents. */
+      scale: z.enum(['fraction', 'percent']).optional(),
       confidence: z.number().min(0).max(1),
     }),
   ),
@@ -50,6 +52,11 @@ export const ImportMapping = z.object({
   weekDateIs: z.enum(['first-day', 'last-day']),
   /** 0 = Sunday … 6 = Saturday: first day of the trading week. */
   firstWeekday: z.number().int().min(0).max(6),
+  /** How dates such as 3/4/2026 are meant, and what `202611` counts; proposed from the file where left out. */
+  dateOrder: z.enum(['day-first', 'month-first']).optional(),
+  yearNumberIs: z.enum(['week', 'month']).optional(),
+  /** Further sheets with the same columns, read with the first. */
+  moreSheets: z.array(z.object({ name: z.string(), headerRow: z.number().int().positive() })).optional(),
   valueIncludesVat: z.boolean(),
   /** Where the file names none: the category, line and location of all its rows. */
   categoryId: Id.nullable(),

@@ -1,4 +1,6 @@
-import { selectRow, selectRows, type Tx } from '../../lib/database.ts';
+import { execute, selectRow, selectRows, type Tx } from '../../lib/database.ts';
+import type { PlannedPrice } from './planned-rows.ts';
+import type { PromotionRun } from './promotion-runs.ts';
 
 export interface PromotionWeekRow {
   itemId: number;
@@ -183,4 +185,50 @@ export async function selectLastSalesWeek(tx: Tx, itemIds: readonly number[]): P
     { itemIds },
   );
   return row?.week ?? null;
+}
+
+export async function insertRevision(
+  tx: Tx,
+  row: { importId: number | null; change: 'accept' | 'withdraw' | 'edit'; actorId: number; note: string | null },
+): Promise<number> {
+  const inserted = await selectRow<{ id: number }>(
+    tx,
+    `insert into calendar_revision (import_id, change, actor_id, note) values ($importId, $change, $actorId, $note) returning id`,
+    row,
+  );
+  if (!inserted) throw new Error('the revision was not stored');
+  return inserted.id;
+}
+
+/** Appends promotions; locationIds null = every location, isNone = there is none in these weeks. */
+export async function insertPromotions(
+  tx: Tx,
+  revision: { revisionId: number; importId: number | null },
+  runs: readonly (Omit<PromotionRun, 'locationIds'> & { locationIds: number[] | null; isNone: boolean })[],
+): Promise<void> {
+  if (runs.length === 0) return;
+  await execute(
+    tx,
+    `insert into promotion_entry
+       (revision_id, import_id, promotion, name, item_ids, location_ids, first_week, last_week, depth, price, feature, display, mechanics, is_none)
+     select $revisionId::int, $importId::int, name, name, "itemIds", "locationIds", "firstWeek", "lastWeek", depth, price, feature, display, mechanics, "isNone"
+     from jsonb_to_recordset($runs::jsonb) as r(name text, "itemIds" int[], "locationIds" int[], "firstWeek" date, "lastWeek" date, depth float8, price float8,
+       feature real, display real, mechanics jsonb, "isNone" boolean)`,
+    { ...revision, runs: JSON.stringify(runs) },
+  );
+}
+
+export async function insertPrices(
+  tx: Tx,
+  revision: { revisionId: number; importId: number | null },
+  prices: readonly PlannedPrice[],
+): Promise<void> {
+  if (prices.length === 0) return;
+  await execute(
+    tx,
+    `insert into price_entry (revision_id, import_id, item_id, location_id, first_week, regular_price)
+     select $revisionId::int, $importId::int, "itemId", "locationId", "firstWeek", "regularPrice"
+     from jsonb_to_recordset($prices::jsonb) as p("itemId" int, "locationId" int, "firstWeek" date, "regularPrice" float8)`,
+    { ...revision, prices: JSON.stringify(prices) },
+  );
 }

@@ -5,8 +5,11 @@ import { demandRight, scopeOf, type Actor } from '../../lib/authorise.ts';
 import { inTransaction, type Database, type Tx } from '../../lib/database.ts';
 import { ProblemError } from '../../lib/problem.ts';
 import * as repository from './calendar.repository.ts';
-import { groupPromotionWeeks } from './promotion-runs.ts';
+import { everyLocation, readPlannedRows, type PlannedRow } from './planned-rows.ts';
+import { groupPromotionWeeks, type PromotionWeek } from './promotion-runs.ts';
 import { listEventDays, listPublicHolidays, type HolidayDay } from './public-holidays.ts';
+
+export type { PlannedRow };
 
 /** What the calendar holds for one series in the weeks asked for; weeks without a promotion and without a planned regular price are left out. */
 export interface PlannedSeries {
@@ -156,4 +159,83 @@ export function readCalendar(
 async function chooseFirstWeek(tx: Tx, itemIds: readonly number[]): Promise<string> {
   const last = await repository.selectLastSalesWeek(tx, itemIds);
   return last === null ? toIsoDate(Math.floor(Date.now() / 86_400_000)) : addWeeks(last, -3);
+}
+
+/**
+ * Writes a calendar file's rows as one revision: promotions joined by equal terms, regular prices where they change, and for weeks that the file
+ * states without a promotion an entry that says so where one is in force. Rows sorted by item, location and week.
+ */
+export async function acceptPlannedRows(
+  tx: Tx,
+  actor: Actor,
+  importId: number,
+  rows: readonly PlannedRow[],
+): Promise<{ revisionId: number }> {
+  const { promotions, unpromoted, prices } = readPlannedRows(rows);
+  const inForce = await loadPromotionKeys(tx, rows);
+  const cancelled = unpromoted
+    .filter((week) => inForce.has(keyOf(week)))
+    .map((week): PromotionWeek => ({ ...week, ...noPromotion }));
+  const revisionId = await repository.insertRevision(tx, { importId, change: 'accept', actorId: actor.id, note: null });
+  const toEntries = (weeks: readonly PromotionWeek[], isNone: boolean) =>
+    groupPromotionWeeks(weeks).map((run) => ({
+      ...run,
+      locationIds: run.locationIds.includes(everyLocation) ? null : run.locationIds,
+      isNone,
+    }));
+  const revision = { revisionId, importId };
+  await repository.insertPromotions(tx, revision, [...toEntries(promotions, false), ...toEntries(cancelled, true)]);
+  await repository.insertPrices(tx, revision, prices);
+  return { revisionId };
+}
+
+/** How many of the rows' keys have a promotion in force, and for how many of these the rows say something else. */
+export async function comparePlannedRows(
+  tx: Tx,
+  rows: readonly PlannedRow[],
+): Promise<{ keysHeld: number; keysChanged: number }> {
+  const { promotions, unpromoted } = readPlannedRows(rows);
+  const inForce = await loadPromotionKeys(tx, rows);
+  const isOther = (week: PromotionWeek) => {
+    const held = inForce.get(keyOf(week));
+    return held !== undefined && held !== termsOf(week);
+  };
+  const changed = promotions.filter(isOther).length + unpromoted.filter((week) => inForce.has(keyOf(week))).length;
+  const held = [...promotions, ...unpromoted].filter((week) => inForce.has(keyOf(week))).length;
+  return { keysHeld: held, keysChanged: changed };
+}
+
+/** After a calendar import was marked withdrawn: its entries no longer count, which is a revision of its own. */
+export async function noteCalendarWithdrawn(tx: Tx, actor: Actor, importId: number, why: string): Promise<void> {
+  await repository.insertRevision(tx, { importId, change: 'withdraw', actorId: actor.id, note: why });
+}
+
+const noPromotion = { name: 'none', depth: null, price: null, feature: 0, display: 0, mechanics: {} };
+
+/** Terms in force by key; a key of every location is held by a promotion at any one. */
+async function loadPromotionKeys(tx: Tx, rows: readonly PlannedRow[]): Promise<Map<string, string>> {
+  const weekStarts = rows.map(({ weekStart }) => weekStart).sort();
+  const firstWeek = weekStarts[0];
+  const lastWeek = weekStarts.at(-1);
+  if (firstWeek === undefined || lastWeek === undefined) return new Map();
+  const itemIds = [...new Set(rows.map(({ itemId }) => itemId))];
+  const named = rows.flatMap(({ locationId }) => (locationId === null ? [] : [locationId]));
+  const isAnywhere = rows.some(({ locationId }) => locationId === null);
+  const sold = isAnywhere ? (await repository.selectLocations(tx, itemIds)).map(({ id }) => id) : [];
+  const locationIds = [...new Set([...named, ...sold, ...(isAnywhere ? [everyLocation] : [])])];
+  const held = await repository.selectPromotionWeeks(tx, { itemIds, locationIds, firstWeek, lastWeek });
+  const keys = new Map<string, string>();
+  for (const week of held) {
+    keys.set(keyOf(week), termsOf(week));
+    if (isAnywhere) keys.set(keyOf({ ...week, locationId: everyLocation }), termsOf(week));
+  }
+  return keys;
+}
+
+function keyOf({ itemId, locationId, weekStart }: { itemId: number; locationId: number; weekStart: string }): string {
+  return `${itemId}|${locationId}|${weekStart}`;
+}
+
+function termsOf({ name, depth, price, feature, display, mechanics }: Omit<PromotionWeek, 'itemId'>): string {
+  return JSON.stringify([name, depth, price, feature, display, Object.entries(mechanics).sort()]);
 }

@@ -1,0 +1,283 @@
+import { createReadStream } from 'node:fs';
+import { pipeline } from 'node:stream/promises';
+import type pg from 'pg';
+import { from as copyFrom } from 'pg-copy-streams';
+import type { ImportTotals } from '../../../shared/contracts/sales.ts';
+import { execute, selectRow, selectRows, type Tx } from '../../lib/database.ts';
+import type { PlannedRow } from '../calendar/calendar.service.ts';
+import type { FileItem, FileLocation } from './range-resolver.ts';
+import { stagedColumns } from './staging-file.ts';
+
+/** Any constant: accepting and withdrawing go one after the other, so that "the newest accepted" is always one and the same. */
+const mergeLock = 4_310_003;
+
+/** Waits for other merges to end; held until the transaction ends. */
+export async function lockMerges(tx: Tx): Promise<void> {
+  await execute(tx, `select pg_advisory_xact_lock($mergeLock)`, { mergeLock });
+}
+
+/** Makes the months that sales from `first` to `last` need. In a transaction of its own: it takes a lock on the whole table. */
+export async function ensureSalesMonths(tx: Tx, first: string, last: string): Promise<void> {
+  await execute(tx, `select ensure_sales_months($first::date, $last::date)`, { first, last });
+}
+
+/**
+ * Pours a staging file into temporary tables of this transaction: `import_row` with the rows, `import_item` and `import_location` with what their
+ * positions stand for. They are gone when the transaction ends.
+ */
+export async function pourRows(
+  tx: Tx,
+  path: string,
+  items: readonly FileItem[],
+  locations: readonly FileLocation[],
+): Promise<void> {
+  await execute(
+    tx,
+    `create temporary table import_row (
+       file_row integer, item_position integer, location_position integer, week_start date, units double precision, net_value double precision,
+       price double precision, regular_price double precision, depth double precision, feature real, display real, mechanics jsonb, gap real,
+       days_open real, promotion_name text
+     ) on commit drop`,
+  );
+  // Sequelize has no COPY; its transaction runs on this connection.
+  const { connection } = tx as Tx & { connection: pg.PoolClient };
+  await pipeline(
+    createReadStream(path, { highWaterMark: 1 << 20 }),
+    connection.query(copyFrom(`copy import_row (${stagedColumns.join(', ')}) from stdin`)),
+  );
+  await execute(
+    tx,
+    `create temporary table import_item on commit drop as
+     select position, id as item_id, code, name, "categoryId" as category_id, "lineId" as line_id, "lineName" as line_name, id is null as is_new
+     from jsonb_to_recordset($items::jsonb) as i(position int, id int, code text, name text, "categoryId" int, "lineId" int, "lineName" text)`,
+    { items: JSON.stringify(items.map((item, position) => ({ ...item, position }))) },
+  );
+  await execute(
+    tx,
+    `create temporary table import_location on commit drop as
+     select position, id as location_id, code from jsonb_to_recordset($locations::jsonb) as l(position int, id int, code text)`,
+    { locations: JSON.stringify(locations.map((location, position) => ({ ...location, position }))) },
+  );
+  await execute(tx, `analyze import_row, import_item, import_location`);
+}
+
+/** Takes out rows that repeat a key under another spelling of its item or location; the first of each stays. */
+export async function removeRepeatedKeys(tx: Tx): Promise<{ row: number; code: string }[]> {
+  return selectRows(
+    tx,
+    `with repeated as (
+       delete from import_row where ctid in (
+         select ctid from (
+           select ctid, row_number() over (partition by item_position, location_position, week_start order by file_row) as place from import_row
+         ) numbered where place > 1
+       ) returning file_row, item_position
+     )
+     select r.file_row as row, i.code from repeated r join import_item i on i.position = r.item_position order by 1`,
+  );
+}
+
+/** Control totals of the rows poured, beside what is held for the same keys. */
+export async function totalRows(
+  tx: Tx,
+): Promise<Omit<ImportTotals, 'rowsRead' | 'rowsRefused' | 'rowsRepaired' | 'byWeek'>> {
+  const row = await selectRow<Awaited<ReturnType<typeof totalRows>>>(
+    tx,
+    `select count(*)::int as "rowsTaken", count(distinct r.week_start)::int as weeks, count(distinct r.item_position)::int as items,
+            count(distinct r.location_position)::int as locations, coalesce(sum(r.units), 0) as units,
+            coalesce(sum(coalesce(r.net_value, r.units * r.price)), 0) as "netValue",
+            to_char(min(r.week_start), 'YYYY-MM-DD') as "firstWeek", to_char(max(r.week_start), 'YYYY-MM-DD') as "lastWeek",
+            count(w.item_id)::int as "keysHeld",
+            count(w.item_id) filter (where (r.units, r.net_value, r.price, r.regular_price, r.feature, r.display, r.gap, r.days_open, r.mechanics)
+              is distinct from (w.units, w.net_value, w.price, w.regular_price, w.feature, w.display, w.gap, w.days_open, w.mechanics))::int as "keysChanged"
+     from import_row r
+     join import_item i on i.position = r.item_position
+     join import_location l on l.position = r.location_position
+     left join sales_week w on w.item_id = i.item_id and w.location_id = l.location_id and w.week_start = r.week_start`,
+  );
+  if (!row) throw new Error('an aggregate without groups always gives a row');
+  return row;
+}
+
+/** Units of the file by week, beside those held before for the same keys. */
+export function totalRowsByWeek(tx: Tx): Promise<ImportTotals['byWeek']> {
+  return selectRows(
+    tx,
+    `select to_char(r.week_start, 'YYYY-MM-DD') as "weekStart", coalesce(sum(r.units), 0) as units, sum(w.units) as "unitsHeld", count(*)::int as rows
+     from import_row r
+     join import_item i on i.position = r.item_position
+     join import_location l on l.position = r.location_position
+     left join sales_week w on w.item_id = i.item_id and w.location_id = l.location_id and w.week_start = r.week_start
+     group by r.week_start order by r.week_start`,
+  );
+}
+
+/** Makes the lines, items and locations that the poured rows name and nobody knows; somebody else may have made them meanwhile. */
+export async function createMissingRange(tx: Tx): Promise<void> {
+  await execute(
+    tx,
+    `insert into product_line (category_id, name)
+     select distinct on (category_id, lower(line_name)) category_id, line_name from import_item
+     where is_new and line_id is null and line_name is not null and category_id is not null
+     order by category_id, lower(line_name), position
+     on conflict (category_id, lower(name)) do nothing`,
+  );
+  await execute(
+    tx,
+    `update import_item i set line_id = p.id from product_line p
+     where i.is_new and i.line_id is null and p.category_id = i.category_id and lower(p.name) = lower(i.line_name)`,
+  );
+  // Whole units unless the file's own figures have decimals; then steps of a tenth, hundredth or thousandth.
+  await execute(
+    tx,
+    `insert into item (code, name, unit_step)
+     select i.code, i.name, case when s.places = 0 then 1 when s.places = 1 then 0.1 when s.places = 2 then 0.01 else 0.001 end
+     from import_item i
+     join (
+       select item_position, max(least(3, coalesce(scale(trim_scale(units::numeric)), 0))) as places from import_row group by item_position
+     ) s on s.item_position = i.position
+     where i.is_new and i.line_id is not null
+     order by i.position
+     on conflict (lower(code)) do nothing`,
+  );
+  await execute(
+    tx,
+    `update import_item i set item_id = t.id from item t where i.is_new and lower(t.code) = lower(i.code)`,
+  );
+  // Long before any week, so that history is whole.
+  await execute(
+    tx,
+    `insert into item_membership (item_id, line_id, valid_from)
+     select i.item_id, i.line_id, date '1900-01-01' from import_item i
+     where i.is_new and i.item_id is not null and i.line_id is not null
+       and not exists (select from item_membership m where m.item_id = i.item_id)`,
+  );
+  await execute(
+    tx,
+    `insert into location (code, name) select code, code from import_location where location_id is null order by position
+     on conflict (lower(code)) do nothing`,
+  );
+  await execute(
+    tx,
+    `update import_location i set location_id = l.id from location l where i.location_id is null and lower(l.code) = lower(i.code)`,
+  );
+}
+
+/** Takes out rows whose item or location still isn't known; returns how many. */
+export async function removeUnknownRows(tx: Tx): Promise<number> {
+  const row = await selectRow<{ count: number }>(
+    tx,
+    `with removed as (
+       delete from import_row r using import_item i, import_location l
+       where i.position = r.item_position and l.position = r.location_position and (i.item_id is null or l.location_id is null)
+       returning 1
+     )
+     select count(*)::int as count from removed`,
+  );
+  return row?.count ?? 0;
+}
+
+export async function insertSalesRevision(
+  tx: Tx,
+  row: { importId: number; change: 'accept' | 'withdraw'; actorId: number },
+): Promise<number> {
+  const inserted = await selectRow<{ id: number }>(
+    tx,
+    `insert into sales_revision (import_id, change, actor_id) values ($importId, $change, $actorId) returning id`,
+    row,
+  );
+  if (!inserted) throw new Error('the revision was not stored');
+  return inserted.id;
+}
+
+const measures = 'units, net_value, price, regular_price, feature, display, mechanics, gap, days_open';
+
+/** Appends the poured rows to the entries and puts them in force. In key order: neighbouring index pages are then written once. */
+export async function mergeSales(tx: Tx, importId: number, revisionId: number): Promise<void> {
+  const rows = `select $importId::int as import_id, $revisionId::int as revision_id, i.item_id, l.location_id, r.*
+     from import_row r
+     join import_item i on i.position = r.item_position
+     join import_location l on l.position = r.location_position
+     order by i.item_id, l.location_id, r.week_start`;
+  await execute(
+    tx,
+    `insert into sales_entry (import_id, revision_id, item_id, location_id, week_start, ${measures}, file_row)
+     select import_id, revision_id, item_id, location_id, week_start, ${measures}, file_row from (${rows}) ordered`,
+    { importId, revisionId },
+  );
+  await execute(
+    tx,
+    `insert into sales_week (import_id, revision_id, item_id, location_id, week_start, ${measures})
+     select import_id, revision_id, item_id, location_id, week_start, ${measures} from (${rows}) ordered
+     on conflict (item_id, location_id, week_start) do update set (import_id, revision_id, ${measures}) =
+       (excluded.import_id, excluded.revision_id, ${measures
+         .split(', ')
+         .map((name) => `excluded.${name}`)
+         .join(', ')})`,
+    { importId, revisionId },
+  );
+}
+
+/**
+ * Takes an import's rows out of force and puts the newest accepted entry of each key they held in their place. The import must be marked withdrawn
+ * already. Returns how many keys were touched and how many of them have an entry again.
+ */
+export async function restoreEarlierSales(tx: Tx, importId: number): Promise<{ touched: number; restored: number }> {
+  await execute(
+    tx,
+    `create temporary table withdrawn_key on commit drop as
+     select item_id, location_id, week_start from sales_week where import_id = $importId`,
+    { importId },
+  );
+  await execute(tx, `analyze withdrawn_key`);
+  await execute(tx, `delete from sales_week where import_id = $importId`, { importId });
+  const row = await selectRow<{ touched: number; restored: number }>(
+    tx,
+    `with span as (select min(week_start) as first_week, max(week_start) as last_week from withdrawn_key),
+     restored as (
+       insert into sales_week (item_id, location_id, week_start, import_id, revision_id, ${measures})
+       select distinct on (e.item_id, e.location_id, e.week_start) e.item_id, e.location_id, e.week_start, e.import_id, e.revision_id, ${measures}
+       from sales_entry e
+       join withdrawn_key k using (item_id, location_id, week_start)
+       join "import" m on m.id = e.import_id and m.state = 'accepted'
+       where e.week_start between (select first_week from span) and (select last_week from span)
+       order by e.item_id, e.location_id, e.week_start, e.revision_id desc
+       returning 1
+     )
+     select (select count(*) from withdrawn_key)::int as touched, (select count(*) from restored)::int as restored`,
+  );
+  return row ?? { touched: 0, restored: 0 };
+}
+
+/** Settles the first day of the trading week, once. */
+export async function fixFirstWeekday(tx: Tx, weekday: number): Promise<void> {
+  await execute(
+    tx,
+    `update setting set value = to_jsonb($weekday::int) where name = 'firstWeekday' and jsonb_typeof(value) <> 'number'`,
+    { weekday },
+  );
+}
+
+/** Categories of the items whose rows were poured. */
+export async function listPouredCategories(tx: Tx): Promise<number[]> {
+  const rows = await selectRows<{ id: number }>(
+    tx,
+    `select distinct i.category_id as id from import_item i
+     where i.category_id is not null and exists (select from import_row r where r.item_position = i.position) order by 1`,
+  );
+  return rows.map(({ id }) => id);
+}
+
+/** The poured rows of a calendar file, by item, location and week. */
+export function selectPlannedRows(tx: Tx): Promise<PlannedRow[]> {
+  return selectRows<PlannedRow>(
+    tx,
+    `select i.item_id as "itemId", l.location_id as "locationId", to_char(r.week_start, 'YYYY-MM-DD') as "weekStart", r.price,
+            r.regular_price as "regularPrice", r.depth, r.feature::float8 as feature, r.display::float8 as display, r.mechanics,
+            r.promotion_name as "promotionName"
+     from import_row r
+     join import_item i on i.position = r.item_position
+     join import_location l on l.position = r.location_position
+     where i.item_id is not null
+     order by i.item_id, l.location_id nulls first, r.week_start`,
+  );
+}
