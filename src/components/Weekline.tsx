@@ -1,12 +1,4 @@
-import {
-  type KeyboardEvent,
-  type PointerEvent,
-  type ReactNode,
-  useLayoutEffect,
-  useMemo,
-  useRef,
-  useState,
-} from 'react';
+import { type ReactNode, useLayoutEffect, useMemo, useRef, useState } from 'react';
 import { useTranslation } from 'react-i18next';
 import type { Weekline as WeeklineContract } from '../../shared/contracts/plan.ts';
 import { addDays, shortWeekLabel, weekLabel } from '../../shared/domain/weeks.ts';

@@ -1,1 +1,34 @@
-export const accountsTexts = {};
+export const accountsTexts = {
+  promise: 'One plan of next weeks’ demand, and why each number is what it is.',
+  caution:
+    'A forecast is an estimate: ordering of perishable or safety-critical goods needs the responsible person’s judgement.',
+  signIn: {
+    title: 'Sign in',
+    email: 'E-mail',
+    password: 'Password',
+    emailMissing: 'Your e-mail address is missing.',
+    passwordMissing: 'Your password is missing.',
+    submit: 'Sign in',
+    busy: 'Signing in…',
+    help: 'No account, or password forgotten? Your administrator makes you a link.',
+  },
+  invitation: {
+    titleFirst: 'The first administrator',
+    leadFirst: 'Nobody can sign in here yet. Whoever uses this link sets up people, roles and categories.',
+    title: 'Welcome to Fairweek',
+    lead: 'You’ve been invited. Choose a password to begin.',
+    name: 'Your name',
+    nameHint: 'Stands beside every number you change.',
+    nameMissing: 'A name is needed.',
+    email: 'E-mail',
+    emailWrong: 'That isn’t an e-mail address.',
+    password: 'Password',
+    passwordHint: 'At least 15 characters. A sentence that only you would say is good.',
+    passwordShort: 'At least 15 characters, at most 128.',
+    show: 'Show the password',
+    submit: 'Begin',
+    busy: 'One moment…',
+    loading: 'Looking the link up…',
+    toSignIn: 'To the sign-in',
+  },
+};
