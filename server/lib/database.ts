@@ -48,6 +48,11 @@ export function inTransaction<T>(database: Database, work: (tx: Tx) => Promise<T
   return database.sequelize.transaction({ isolationLevel: Transaction.ISOLATION_LEVELS.READ_COMMITTED }, work);
 }
 
+/** Reads in one transaction that sees a single state of the database (repeatable read), for what is read by several statements. */
+export function inSnapshot<T>(database: Database, work: (tx: Tx) => Promise<T>): Promise<T> {
+  return database.sequelize.transaction({ isolationLevel: Transaction.ISOLATION_LEVELS.REPEATABLE_READ }, work);
+}
+
 /** Rows of a statement with bound parameters (`$name`). The caller states the row's type as its columns are cast in SQL. */
 export async function selectRows<Row extends object>(
   tx: Tx,

@@ -43,6 +43,8 @@ create table run_series (
   item_id integer not null references item,
   location_id integer not null references location,
   first_week date not null,
+  -- As it was then: a version is rebuilt with the steps it was spread in.
+  unit_step double precision not null check (unit_step > 0),
   method text not null,
   model double precision[] not null,
   mean double precision[] not null,

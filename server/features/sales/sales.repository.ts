@@ -111,8 +111,8 @@ export interface WeekTotalRow {
   isPromoted: boolean;
 }
 
-/** Units by week over a category, ascending. */
-export function selectCategoryWeeks(tx: Tx, categoryId: number): Promise<WeekTotalRow[]> {
+/** Units by week over a category or one line of it, ascending. */
+export function selectCategoryWeeks(tx: Tx, categoryId: number, lineId: number | null = null): Promise<WeekTotalRow[]> {
   return selectRows<WeekTotalRow>(
     tx,
     `select to_char(w.week_start, 'YYYY-MM-DD') as "weekStart", sum(w.units) as units,
@@ -120,9 +120,9 @@ export function selectCategoryWeeks(tx: Tx, categoryId: number): Promise<WeekTot
      from sales_week w
      join item_membership m on m.item_id = w.item_id and w.week_start >= m.valid_from and (m.valid_to is null or w.week_start < m.valid_to)
      join product_line p on p.id = m.line_id
-     where p.category_id = $categoryId
+     where p.category_id = $categoryId and ($lineId::int is null or p.id = $lineId::int)
      group by w.week_start order by w.week_start`,
-    { categoryId },
+    { categoryId, lineId },
   );
 }
 

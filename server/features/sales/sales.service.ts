@@ -89,12 +89,13 @@ export async function salesTotalsByWeek(
   });
 }
 
-/** Units of a category by week, ascending, for the weekline. */
+/** Units of a category, or of one line of it, by week, ascending, for the weekline. */
 export function categorySalesByWeek(
   tx: Tx,
   categoryId: number,
+  lineId: number | null = null,
 ): Promise<{ weekStart: string; units: number; isPromoted: boolean }[]> {
-  return repository.selectCategoryWeeks(tx, categoryId);
+  return repository.selectCategoryWeeks(tx, categoryId, lineId);
 }
 
 /** Last accepted sales week of a category: the seam lies after it. null without sales. */

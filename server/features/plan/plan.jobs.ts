@@ -1,0 +1,57 @@
+import { Piscina } from 'piscina';
+import { z } from 'zod';
+import type { LineForecast, LineInput } from '../../forecasting/types.ts';
+import { demandRight } from '../../lib/authorise.ts';
+import { inSnapshot, inTransaction } from '../../lib/database.ts';
+import type { JobHandler } from '../jobs/jobs.service.ts';
+import { gatherForecast, saveForecast } from './forecast.service.ts';
+
+const ForecastPayload = z.object({ categoryId: z.number().int(), horizonWeeks: z.number().int().min(1) });
+const threads = 2;
+
+/** Fits and forecasts every line of a category in worker threads, largest first, and saves all of them at once. */
+export const forecastCategoryJob: JobHandler = async (job) => {
+  const { database, actor, payload, jobId } = job;
+  const { categoryId, horizonWeeks } = ForecastPayload.parse(payload);
+  demandRight(actor, 'generate-forecast', categoryId);
+  await job.report(0, { key: 'forecastReading', values: {} });
+  const gathered = await inSnapshot(database, (tx) => gatherForecast(tx, categoryId, horizonWeeks));
+
+  const total = gathered.lines.length;
+  let done = 0;
+  const forecasts = await inThreads(async (forecastLine) => {
+    const results = new Array<LineForecast>(total);
+    const bySize = gathered.lines
+      .map(({ history }, index) => ({ index, size: history.reduce((sum, { sold }) => sum + sold.length, 0) }))
+      .sort((a, b) => b.size - a.size);
+    await job.report(0.02, { key: 'forecastLines', values: { done, total } });
+    await Promise.all(
+      bySize.map(async ({ index }) => {
+        results[index] = await forecastLine(gathered.lines[index]!.input);
+        done += 1;
+        await job.report(0.02 + (0.95 * done) / total, { key: 'forecastLines', values: { done, total } });
+      }),
+    );
+    return results;
+  });
+
+  const runId = await inTransaction(database, (tx) => saveForecast(tx, actor, gathered, forecasts, jobId));
+  return { runId, lines: total };
+};
+
+/** A pool for one job; its threads end with it. */
+async function inThreads<T>(
+  work: (forecastLine: (input: LineInput) => Promise<LineForecast>) => Promise<T>,
+): Promise<T> {
+  const pool = new Piscina<LineInput, LineForecast>({
+    filename: new URL('../../forecasting/line-worker.ts', import.meta.url).href,
+    execArgv: ['--import', 'tsx'],
+    minThreads: 1,
+    maxThreads: threads,
+  });
+  try {
+    return await work((input) => pool.run(input));
+  } finally {
+    await pool.destroy();
+  }
+}
