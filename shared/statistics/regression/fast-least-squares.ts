@@ -7,11 +7,11 @@ import { fitLeastSquares } from './least-squares.ts';
 import type { LeastSquaresFit, LeastSquaresInput } from './types.ts';
 
 /**
- * Largest 1-norm condition number of the scaled Gram matrix that Cholesky is trusted with. One refinement leaves about
- * (condition · 1e-16)² of the solution's error, so at 1e8 less than the rounding of the data.
+ * Largest 1-norm condition number of the scaled Gram matrix that Cholesky is trusted with. At 1e8 Wampler4 and Wampler5, whose noise drowns the
+ * signal, kept 0.3 digits fewer than Householder QR without refinement; the orange-juice designs stand below 1e5.
  */
-const largestCondition = 1e8;
-const smallestPivot = 1e-8;
+const largestCondition = 1e6;
+const smallestPivot = 1e-6;
 
 /** The normal equations of one design, from which any subset of its columns is fitted without touching every pair of columns again. */
 export interface NormalEquations {
