@@ -272,8 +272,9 @@ export async function stageRows(
         kind: string,
         verdict: 'refused' | 'noticed',
       ) => {
-        const before = (meaning === 'category' ? row.category : row[meaning]) ?? null;
-        const column = columnOf.get(meaning);
+        const blamed = columnOf.has(meaning) ? meaning : 'item';
+        const before = row[blamed] ?? null;
+        const column = columnOf.get(blamed);
         const cell = column === undefined ? null : `${nameColumn(column)}${row.row}`;
         tell(
           { sheet: row.sheet, cell, row: row.row, kind, before, after: null, verdict, detail },

@@ -64,6 +64,9 @@ export interface RowNotice {
 
 export type Resolution = { item: number; location: number; notice: RowNotice | null } | RowRefusal;
 
+/** What a company that sends totals has for a location; it is made without asking. */
+export const wholeMarket = 'all';
+
 const fold = (text: string) => text.trim().toLowerCase();
 
 /**
@@ -152,7 +155,9 @@ export class RangeResolver {
           name: name === code ? null : name,
           line: lineId === null ? lineName : (this.lineNames.get(lineId) ?? null),
         })),
-      locations: this.locations.filter(({ id }) => id === null).map(({ code }) => code),
+      locations: this.locations
+        .filter(({ id, code }) => id === null && fold(code) !== wholeMarket)
+        .map(({ code }) => code),
     };
   }
 
@@ -241,7 +246,7 @@ export class RangeResolver {
     const named = this.locationsByName.get(key) ?? [];
     const id = byCode ?? (named.length === 1 ? named[0] : undefined);
     if (id !== undefined) return this.place(this.locationPositions, this.locations, `#${id}`, { id, code: text });
-    if (named.length > 1 || (!this.choices.mayCreate && key !== 'all')) {
+    if (named.length > 1 || (!this.choices.mayCreate && key !== wholeMarket)) {
       const detail =
         named.length > 1
           ? `“${text}” is the name of several locations. Use the code.`

@@ -16,7 +16,7 @@ import type { JobContext, JobHandler } from '../jobs/jobs.service.ts';
 import * as imports from './imports.repository.ts';
 import type { ImportPreview, StoredImport } from './imports.repository.ts';
 import { openUpload, proposeReading, stageRows, toNotice, type StagedReading } from './import-reading.ts';
-import type { RangeSnapshot, ResolverChoices } from './range-resolver.ts';
+import { wholeMarket, type RangeSnapshot, type ResolverChoices } from './range-resolver.ts';
 import * as staging from './staging.repository.ts';
 import { StagingFile } from './staging-file.ts';
 
@@ -158,7 +158,8 @@ async function mergeFile(context: JobContext, stored: StoredImport, folder: stri
     await demandState(tx, stored.id, 'accepting');
     const totals = await totalStaged(tx, mapping, reading, file.path);
     if (mapping.kind === 'sales') {
-      if (createsUnknown) await staging.createMissingRange(tx);
+      if (createsUnknown) await staging.createMissingItems(tx);
+      await staging.createMissingLocations(tx, createsUnknown ? null : wholeMarket);
       await leaveOutUnknown(tx, reading, totals);
       const row = { importId: stored.id, change: 'accept', actorId: actor.id } as const;
       await staging.mergeSales(tx, stored.id, await staging.insertSalesRevision(tx, row));

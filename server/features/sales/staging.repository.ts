@@ -111,8 +111,8 @@ export function totalRowsByWeek(tx: Tx): Promise<ImportTotals['byWeek']> {
   );
 }
 
-/** Makes the lines, items and locations that the poured rows name and nobody knows; somebody else may have made them meanwhile. */
-export async function createMissingRange(tx: Tx): Promise<void> {
+/** Makes the lines and items that the poured rows name and nobody knows; somebody else may have made them meanwhile. */
+export async function createMissingItems(tx: Tx): Promise<void> {
   await execute(
     tx,
     `insert into product_line (category_id, name)
@@ -151,10 +151,16 @@ export async function createMissingRange(tx: Tx): Promise<void> {
      where i.is_new and i.item_id is not null and i.line_id is not null
        and not exists (select from item_membership m where m.item_id = i.item_id)`,
   );
+}
+
+/** Makes the locations that nobody knows yet; `onlyCode` (lower case) = only that one. */
+export async function createMissingLocations(tx: Tx, onlyCode: string | null): Promise<void> {
   await execute(
     tx,
-    `insert into location (code, name) select code, code from import_location where location_id is null order by position
+    `insert into location (code, name) select code, code from import_location
+     where location_id is null and ($onlyCode::text is null or lower(code) = $onlyCode::text) order by position
      on conflict (lower(code)) do nothing`,
+    { onlyCode },
   );
   await execute(
     tx,
