@@ -93,3 +93,15 @@ export async function insertPack(
   if (!row) throw new Error('pack was not stored');
   return row.id;
 }
+
+/** Whether prices and net value of the category's sales in force hold VAT; null where imports differ or nothing is in. */
+export async function isVatIncluded(tx: Tx, categoryId: number): Promise<boolean | null> {
+  const rows = await selectRows<{ included: boolean | null }>(
+    tx,
+    `select distinct (i.mapping->>'valueIncludesVat')::boolean as included
+     from "import" i join import_category c on c.import_id = i.id
+     where c.category_id = $categoryId and i.kind = 'sales' and i.state = 'accepted'`,
+    { categoryId },
+  );
+  return rows.length === 1 ? (rows[0]?.included ?? null) : null;
+}
