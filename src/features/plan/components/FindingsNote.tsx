@@ -1,0 +1,58 @@
+import type { TFunction } from 'i18next';
+import { useTranslation } from 'react-i18next';
+import type { Finding } from '../../../../shared/contracts/lines.ts';
+
+/** Findings that change how far a number can be trusted stand first; the rest is detail of the data. */
+const weighty = new Set(['simple-average', 'too-little-history', 'outside-seen-prices', 'outside-seen-promotions']);
+
+function describeFinding(t: TFunction<'plan'>, finding: Finding): string {
+  const place = [finding.item, finding.location].filter(Boolean).join(', ');
+  const words = t(`finding.${finding.kind}`, {
+    ...finding.values,
+    defaultValue: t('finding.other', { kind: finding.kind.replaceAll('-', ' ') }),
+  });
+  return place === '' ? words : `${place}: ${words}`;
+}
+
+/** What the forecast of a line has to say about itself. */
+export function FindingsNote({ findings, modelPath }: { findings: readonly Finding[]; modelPath?: string }) {
+  const { t } = useTranslation('plan');
+  if (findings.length === 0) return null;
+  const first = findings.filter(({ kind }) => weighty.has(kind));
+  const rest = findings.filter(({ kind }) => !weighty.has(kind));
+  const byKind = new Map<string, Finding[]>();
+  for (const finding of rest) byKind.set(finding.kind, [...(byKind.get(finding.kind) ?? []), finding]);
+  return (
+    <div className="text-small">
+      {first.slice(0, 3).map((finding, index) => (
+        <p key={index} className="border-l-2 border-turmeric pl-3">
+          <b className="text-turmeric">{t('finding.caution')}</b> {describeFinding(t, finding)}
+        </p>
+      ))}
+      {findings.length > Math.min(3, first.length) && (
+        <details className="mt-1">
+          <summary className="cursor-pointer text-soft">{t('finding.all', { count: findings.length })}</summary>
+          <ul className="mt-1 max-h-40 overflow-y-auto pl-4">
+            {first.slice(3, 20).map((finding, index) => (
+              <li key={index}>{describeFinding(t, finding)}</li>
+            ))}
+            {[...byKind.values()].map((same) => (
+              <li key={same[0]?.kind}>
+                {same
+                  .slice(0, 2)
+                  .map((finding) => describeFinding(t, finding))
+                  .join(' · ')}
+                {same.length > 2 && ` · ${t('finding.more', { count: same.length - 2 })}`}
+              </li>
+            ))}
+          </ul>
+          {modelPath && (
+            <a className="act mt-1 inline-block" href={modelPath}>
+              {t('tools.model')}
+            </a>
+          )}
+        </details>
+      )}
+    </div>
+  );
+}

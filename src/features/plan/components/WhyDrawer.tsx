@@ -1,0 +1,453 @@
+import { useQueries, useQuery } from '@tanstack/react-query';
+import { useState, type ReactNode } from 'react';
+import { useTranslation } from 'react-i18next';
+import type { LinePlan } from '../../../../shared/contracts/plan.ts';
+import { scopeHolds, scopesMeet } from '../../../../shared/domain/override-arithmetic.ts';
+import { weeksBetween } from '../../../../shared/domain/weeks.ts';
+import { Button } from '../../../components/Button.tsx';
+import { CloseButton } from '../../../components/CloseButton.tsx';
+import { ForkMark, PennantMark, RingMark } from '../../../components/marks.tsx';
+import {
+  formatFactor,
+  formatInstant,
+  formatNumber,
+  formatPercent,
+  formatSigned,
+  formatWeekDates,
+  shortWeekLabel,
+  weekLabel,
+} from '../../../lib/format.ts';
+import type { GridColumn } from '../grid-columns.ts';
+import type { GridRow } from '../grid-rows.ts';
+import { findRange, rowOfVersion, type LineFigures, type RowFigures } from '../line-figures.ts';
+import type { PendingEdit } from '../pending-edits.ts';
+import { versionsQuery, versionStateQuery } from '../queries.ts';
+import { RangeDrawing } from './RangeDrawing.tsx';
+
+const mostEarlier = 8;
+
+interface WhyDrawerProps {
+  plan: LinePlan;
+  row: GridRow;
+  name: string;
+  column: GridColumn;
+  figures: RowFigures;
+  lineFigures: LineFigures;
+  pending: readonly PendingEdit[];
+  describeScope: (scope: { itemId: number | null; locationId: number | null }) => string;
+  onClose: () => void;
+}
+
+/** Where the number of one cell comes from: its parts, the model's range, promotions, overrides and earlier values. */
+export function WhyDrawer(props: WhyDrawerProps) {
+  const { column, figures, name, onClose } = props;
+  const { t } = useTranslation('plan');
+  const { t: common } = useTranslation('common');
+  const value = column.kind === 'history' ? (figures.history[column.index] ?? null) : (figures.plan[column.index] ?? 0);
+  const figure = value === null || Number.isNaN(value) ? '–' : formatNumber(value);
+  return (
+    <aside aria-label={t('why.label')} className="plan-drawer">
+      <div className="flex items-start justify-between">
+        <h2 className="text-[20px]/6">
+          {column.kind === 'plan' ? t('why.title', { figure }) : t('why.sold', { figure })}
+        </h2>
+        <CloseButton label={common('close')} onClick={onClose} />
+      </div>
+      <p className="text-small text-soft">
+        {name}, {weekLabel(column.weekStart)}, {formatWeekDates(column.weekStart)}
+      </p>
+      {column.kind === 'plan' ? (
+        <PlannedCell key={`${props.row.key}/${column.weekStart}`} {...props} />
+      ) : (
+        <SoldCell {...props} />
+      )}
+    </aside>
+  );
+}
+
+function SoldCell({ plan, row, column, figures }: WhyDrawerProps) {
+  const { t } = useTranslation('plan');
+  const gaps = figures.gaps[column.index] ?? 0;
+  const lastYear = figures.history[column.index - 52];
+  return (
+    <div className="mt-3 flex flex-col gap-2 text-small">
+      {figures.history[column.index] === null && <p>{t('why.nothingKnown')}</p>}
+      {gaps > 0 && (
+        <p>
+          {row.seriesIndexes.length === 1
+            ? t('why.gapOne')
+            : t('why.gap', { count: gaps, of: row.seriesIndexes.length })}
+        </p>
+      )}
+      {lastYear !== undefined && lastYear !== null && <p>{t('why.lastYear', { units: formatNumber(lastYear) })}</p>}
+      <Promotions plan={plan} row={row} weekStart={column.weekStart} uplift={null} />
+    </div>
+  );
+}
+
+function PlannedCell({ plan, row, column, figures, lineFigures, pending, describeScope }: WhyDrawerProps) {
+  const { t } = useTranslation('plan');
+  const week = column.index;
+  const series = row.seriesIndexes.flatMap((index) => plan.series[index] ?? []);
+  const sum = (values: (number | null | undefined)[]) => values.reduce<number>((total, each) => total + (each ?? 0), 0);
+  const model = figures.model[week] ?? 0;
+  const held = figures.plan[week] ?? 0;
+  const base = sum(series.map((each) => each.base[week]));
+  const uplift = model - base;
+  const moved = held - model;
+  const lastYears = series.map((each) => each.lastYear[week]);
+  const lastYear = lastYears.some((each) => each !== null && each !== undefined) ? sum(lastYears) : null;
+  const range = findRange(plan, row);
+  const marks = figures.marks[week];
+  const largest = Math.max(base, model, held, base + uplift, 1);
+  const averaged = series.filter(({ method }) => method === 'simple-average').length;
+  const prices = series.map((each) => each.price[week]);
+  const hasPrices = prices.length > 0 && prices.every((price) => price !== null && price !== undefined);
+  const netValue = hasPrices
+    ? sum(row.seriesIndexes.map((index, at) => (lineFigures.plan[index]?.[week] ?? 0) * (prices[at] ?? 0)))
+    : null;
+  const inForce = plan.overrides.filter(
+    (override) =>
+      override.operation !== 'clear' &&
+      override.firstWeek <= column.weekStart &&
+      override.lastWeek >= column.weekStart &&
+      scopesMeet(override.scope, row.scope),
+  );
+  const own = inForce.filter((override) => scopeHolds(override.scope, row.scope));
+  const under = inForce.filter((override) => !scopeHolds(override.scope, row.scope));
+  const unsaved = pending.filter(
+    (edit) =>
+      edit.firstWeek <= column.weekStart && edit.lastWeek >= column.weekStart && scopesMeet(edit.scope, row.scope),
+  );
+  return (
+    <>
+      <table className="plan-parts">
+        <caption className="sr-only">{t('why.parts')}</caption>
+        <thead>
+          <tr>
+            <th scope="col">{t('why.part')}</th>
+            <th aria-hidden="true" />
+            <th scope="col" className="num">
+              {t('why.units')}
+            </th>
+          </tr>
+        </thead>
+        <tbody>
+          <Part label={t('why.base')} units={formatNumber(base)} from={0} to={base} largest={largest} colour="sky" />
+          {Math.abs(uplift) > 1e-9 && (
+            <Part
+              label={t('why.uplift')}
+              units={formatSigned(uplift)}
+              from={base}
+              to={model}
+              largest={largest}
+              colour="pennant"
+              textColour="text-turmeric"
+            />
+          )}
+          <Part
+            label={t('why.modelMean')}
+            units={formatNumber(model)}
+            from={0}
+            to={model}
+            largest={largest}
+            colour="sky"
+            textColour="text-sky"
+            isSum
+          />
+          {Math.abs(moved) > 1e-9 && !Number.isNaN(held) && (
+            <Part
+              label={t('why.overrides')}
+              units={formatSigned(moved)}
+              from={model}
+              to={held}
+              largest={largest}
+              colour="plum"
+              textColour="text-plum"
+            />
+          )}
+        </tbody>
+        <tfoot>
+          <tr>
+            <th scope="row" colSpan={2}>
+              {t('why.plan')}
+            </th>
+            <td className="num">
+              <span className={Math.abs(moved) > 1e-9 ? 'over' : ''}>
+                {Number.isNaN(held) ? '–' : formatNumber(held)}
+              </span>
+            </td>
+          </tr>
+        </tfoot>
+      </table>
+
+      <div className="mt-2 flex flex-col gap-1 text-small">
+        {column.isLocked && <p>{t('why.locked', { version: lockVersion(plan, column.weekStart) })}</p>}
+        {unsaved.length > 0 && <p className="text-plum">{t('why.unsaved', { count: unsaved.length })}</p>}
+        {marks?.isOutsideRange && (
+          <p>
+            <ForkMark /> {t('why.outside')}
+          </p>
+        )}
+        {netValue !== null && <p className="text-soft">{t('why.netValue', { value: formatNumber(netValue) })}</p>}
+        {averaged > 0 && (
+          <p className="border-l-2 border-turmeric pl-2">
+            {series.length === 1 ? t('why.averageOne') : t('why.average', { count: averaged, of: series.length })}
+          </p>
+        )}
+        <Promotions plan={plan} row={row} weekStart={column.weekStart} uplift={uplift} />
+      </div>
+
+      <h3 className="mt-3 text-[14px]/[18px]">{t('why.range')}</h3>
+      {range ? (
+        <>
+          <RangeDrawing
+            low95={range.p2_5[week] ?? 0}
+            low80={range.p10[week] ?? 0}
+            high80={range.p90[week] ?? 0}
+            high95={range.p97_5[week] ?? 0}
+            model={model}
+            plan={Number.isNaN(held) ? model : held}
+            lastYear={lastYear}
+          />
+          <p className="mt-1 text-small text-soft">
+            {t('why.median')} <b className="text-ink">{formatNumber(range.p50[week] ?? 0, 0)}</b>
+          </p>
+        </>
+      ) : (
+        <p className="text-small text-soft">
+          {t('why.noRange')} {lastYear !== null && t('why.lastYear', { units: formatNumber(lastYear) })}
+        </p>
+      )}
+
+      <h3 className="mt-3 text-[14px]/[18px]">{t('why.inForce')}</h3>
+      {inForce.length === 0 && <p className="text-small text-soft">{t('why.noOverride')}</p>}
+      <ul>
+        {[...own, ...under.slice(-6)].map((override) => {
+          const baseModel = override.baseModel[weeksBetween(override.firstWeek, column.weekStart)];
+          return (
+            <li key={override.id} className="border-t border-line py-1.5 text-small">
+              <span className="flex justify-between gap-2">
+                <span>
+                  <b>{override.author}</b> {describeOperation(t, override.operation, override.value)}
+                  {override.firstWeek !== override.lastWeek &&
+                    `, ${shortWeekLabel(override.firstWeek)}–${shortWeekLabel(override.lastWeek)}`}
+                </span>
+                <span className="num text-soft">
+                  {t('why.versionShort', { number: override.version })}
+                  <br />
+                  {formatInstant(override.at)}
+                </span>
+              </span>
+              {(override.scope.itemId !== row.scope.itemId || override.scope.locationId !== row.scope.locationId) && (
+                <span className="block text-soft">{t('why.on', { scope: describeScope(override.scope) })}</span>
+              )}
+              {(override.reason ?? override.note) && (
+                <span className="block text-soft italic">
+                  {[override.reason, override.note].filter(Boolean).join(': ')}
+                </span>
+              )}
+              {override.needsDecision !== null && (
+                <span className="block text-madder">
+                  <span className="plan-decision" aria-hidden="true">
+                    !
+                  </span>{' '}
+                  {t('why.decision')} {override.needsDecision}
+                </span>
+              )}
+              {override.isDueAnotherLook && (
+                <span className="block text-plum">
+                  <RingMark /> {t('why.look')}
+                  {baseModel !== undefined && ` ${t('why.lookFrom', { before: formatNumber(baseModel) })}`}
+                </span>
+              )}
+            </li>
+          );
+        })}
+      </ul>
+      {under.length > 6 && <p className="text-small text-soft">{t('why.moreUnder', { count: under.length - 6 })}</p>}
+      <EarlierValues plan={plan} row={row} weekStart={column.weekStart} />
+      <p className="mt-3 border-t border-line pt-2 text-tiny text-soft">
+        {plan.run && t('why.caution', { week: weekLabel(plan.run.salesTo) })}
+      </p>
+    </>
+  );
+}
+
+function lockVersion(plan: LinePlan, weekStart: string): number | string {
+  return plan.locks.find(({ firstWeek, lastWeek }) => weekStart >= firstWeek && weekStart <= lastWeek)?.version ?? '–';
+}
+
+/** `set to 240`, `+12`, `× 1.05` in words. */
+export function describeOperation(
+  t: (key: string, values?: Record<string, unknown>) => string,
+  operation: string,
+  value: number | null,
+): string {
+  if (operation === 'set to') return t('operation.didSetTo', { value: formatNumber(value ?? 0) });
+  if (operation === 'add') return t('operation.didAdd', { value: formatSigned(value ?? 0) });
+  if (operation === 'scale by') return t('operation.didScaleBy', { value: formatFactor(value ?? 1) });
+  return t('operation.didClear');
+}
+
+const barWidth = 84;
+
+function Part({
+  label,
+  units,
+  from,
+  to,
+  largest,
+  colour,
+  textColour = '',
+  isSum = false,
+}: {
+  label: ReactNode;
+  units: string;
+  from: number;
+  to: number;
+  largest: number;
+  colour: string;
+  textColour?: string;
+  isSum?: boolean;
+}) {
+  const x = (value: number) => (Math.max(0, value) / largest) * (barWidth - 2);
+  const left = Math.min(x(from), x(to));
+  const width = Math.max(1, Math.abs(x(to) - x(from)));
+  const takesAway = to < from;
+  return (
+    <tr className={isSum ? 'is-sum' : ''}>
+      <th scope="row" className={textColour}>
+        {label}
+      </th>
+      <td aria-hidden="true">
+        <svg width={barWidth} height="16">
+          {takesAway ? (
+            <rect
+              x={left + 0.5}
+              y="4.5"
+              width={Math.max(1, width - 1)}
+              height="7"
+              fill="none"
+              stroke={`var(--${colour})`}
+            />
+          ) : (
+            <rect x={left} y="4" width={width} height="8" fill={`var(--${colour})`} />
+          )}
+          <path d={`M${x(to)} 4V16`} stroke="var(--rule)" strokeWidth=".8" />
+        </svg>
+      </td>
+      <td className={`num ${textColour}`}>{units}</td>
+    </tr>
+  );
+}
+
+function Promotions({
+  plan,
+  row,
+  weekStart,
+  uplift,
+}: {
+  plan: LinePlan;
+  row: GridRow;
+  weekStart: string;
+  uplift: number | null;
+}) {
+  const { t } = useTranslation('plan');
+  const series = row.seriesIndexes.flatMap((index) => plan.series[index] ?? []);
+  const promotions = plan.promotions.filter(
+    (promotion) =>
+      promotion.firstWeek <= weekStart &&
+      promotion.lastWeek >= weekStart &&
+      series.some(
+        ({ itemId, locationId }) => promotion.itemIds.includes(itemId) && promotion.locationIds.includes(locationId),
+      ),
+  );
+  if (promotions.length === 0) return null;
+  return (
+    <>
+      {uplift !== null && Math.abs(uplift) > 1e-9 && (
+        <p>
+          <b className="text-turmeric">{t('why.includes', { units: formatSigned(uplift) })}</b>
+        </p>
+      )}
+      <ul>
+        {promotions.slice(0, 4).map((promotion, index) => {
+          const facts = [
+            promotion.depth !== null && promotion.depth > 0
+              ? t('why.depth', { depth: formatPercent(promotion.depth, 0) })
+              : null,
+            promotion.feature > 0 ? t('why.feature') : null,
+            promotion.display > 0 ? t('why.display') : null,
+            ...Object.keys(promotion.mechanics).filter((mechanic) => (promotion.mechanics[mechanic] ?? 0) > 0),
+          ].filter(Boolean);
+          return (
+            <li key={index} className="flex gap-1.5">
+              <span className="pt-0.5">
+                <PennantMark />
+              </span>
+              <span>
+                {promotion.name}
+                {facts.length > 0 && <span className="text-soft">, {facts.join(', ')}</span>}
+              </span>
+            </li>
+          );
+        })}
+      </ul>
+    </>
+  );
+}
+
+/** What the cell held in earlier versions, read only when asked for: each version is the whole line. */
+function EarlierValues({ plan, row, weekStart }: { plan: LinePlan; row: GridRow; weekStart: string }) {
+  const { t } = useTranslation('plan');
+  const [isAsked, setAsked] = useState(false);
+  const lineId = plan.line.id;
+  const { data } = useQuery({ ...versionsQuery(lineId), refetchInterval: false });
+  const newest = (data?.versions ?? []).toSorted((a, b) => b.number - a.number).slice(0, mostEarlier);
+  const states = useQueries({
+    queries: newest.map(({ number }) => ({ ...versionStateQuery(lineId, number), enabled: isAsked })),
+  });
+  const values = states.flatMap((state) => {
+    if (!state.data) return [];
+    const units = rowOfVersion(state.data, plan, row).get(weekStart);
+    return units === undefined ? [] : [{ version: state.data.version, units }];
+  });
+  const distinct = values.filter(({ units }, index) => values[index + 1]?.units !== units);
+  return (
+    <>
+      <h3 className="mt-3 text-[14px]/[18px]">{t('why.earlier')}</h3>
+      {!isAsked ? (
+        <Button variant="text" className="!text-small" onClick={() => setAsked(true)}>
+          {t('why.showEarlier')}
+        </Button>
+      ) : states.some((state) => state.isPending) ? (
+        <p role="status" className="text-small text-soft">
+          {t('why.readingEarlier')}
+        </p>
+      ) : (
+        <ol>
+          {distinct.map(({ version, units }) => (
+            <li
+              key={version.number}
+              className="grid grid-cols-[48px_1fr_auto] gap-x-2.5 border-t border-line py-1 text-small"
+            >
+              <span className={`num ${version.kind === 'forecast' ? 'text-sky' : 'text-plum'}`}>
+                {formatNumber(units)}
+              </span>
+              <span>
+                <b>{version.author}</b> <span className="text-soft">{t(`versions.kind.${version.kind}`)}</span>
+                {version.reason && <span className="block text-soft italic">{version.reason}</span>}
+              </span>
+              <span className="num text-soft">
+                {t('why.versionShort', { number: version.number })}
+                <br />
+                {formatInstant(version.at)}
+              </span>
+            </li>
+          ))}
+        </ol>
+      )}
+    </>
+  );
+}
