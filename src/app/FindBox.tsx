@@ -23,7 +23,7 @@ export function FindBox() {
       firstWeek: category?.lastSalesWeek ? addWeeks(category.lastSalesWeek, -12) : '',
       weeks: 39,
     }),
-    enabled: isOpen && category?.lastSalesWeek != null,
+    enabled: isOpen && typeof category?.lastSalesWeek === 'string',
   });
   const found = findByName(text, categories, calendar.data ?? null);
   const isListShown = isOpen && text.trim() !== '';

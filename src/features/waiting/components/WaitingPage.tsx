@@ -6,7 +6,6 @@ import {
   isoWeekOf,
   shortWeekLabel,
   startOfTradingWeek,
-  toIsoDate,
   type Weekday,
   weekdayOf,
 } from '../../../../shared/domain/weeks.ts';
@@ -16,16 +15,11 @@ import { Weekline } from '../../../components/Weekline.tsx';
 import { useCategoryInView } from '../../../lib/categories.ts';
 import { categoryPlanQuery } from '../../../lib/category-plan.ts';
 import { formatSignedPercent, formatUnits, formatWeekday } from '../../../lib/format.ts';
+import { readToday } from '../../../lib/today.ts';
 import { useTitle } from '../../../lib/use-title.ts';
 import { waitingQuery } from '../queries.ts';
 import { CategoryGlance } from './CategoryGlance.tsx';
 import { WaitingEntries } from './WaitingEntries.tsx';
-
-/** The date on the person's own clock. */
-function readToday(): string {
-  const now = new Date();
-  return toIsoDate(Math.floor((now.getTime() - now.getTimezoneOffset() * 60_000) / 86_400_000));
-}
 
 export function WaitingPage() {
   const { t } = useTranslation('waiting');
