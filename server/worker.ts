@@ -1,21 +1,11 @@
 import { run } from 'graphile-worker';
 import { z } from 'zod';
 import { loadActor } from './features/accounts/accounts.service.ts';
-import { runJob, type JobHandler, type JobKind } from './features/jobs/jobs.service.ts';
-import { buildPackJob } from './features/packs/packs.jobs.ts';
-import { forecastCategoryJob } from './features/plan/plan.jobs.ts';
-import { acceptImportJob, readImportJob, withdrawImportJob } from './features/sales/sales.jobs.ts';
+import { runJob } from './features/jobs/jobs.service.ts';
+import { jobHandlers } from './job-handlers.ts';
 import { openDatabase } from './lib/database.ts';
 import { readEnv } from './lib/env.ts';
 import { openLog } from './lib/log.ts';
-
-const handlers: Readonly<Record<JobKind, JobHandler>> = {
-  'import.read': readImportJob,
-  'import.accept': acceptImportJob,
-  'import.withdraw': withdrawImportJob,
-  'forecast.category': forecastCategoryJob,
-  'pack.build': buildPackJob,
-};
 
 /** The background process: takes jobs from the queue in the database. Several may run, on several machines. */
 const env = readEnv();
@@ -31,7 +21,7 @@ const runner = await run({
   taskList: {
     'run-job': async (payload, { job }) => {
       const { jobId } = JobPayload.parse(payload);
-      await runJob({ database, log, handlers, loadActor }, jobId, job.attempts >= job.max_attempts);
+      await runJob({ database, log, handlers: jobHandlers, loadActor }, jobId, job.attempts >= job.max_attempts);
     },
   },
 });
