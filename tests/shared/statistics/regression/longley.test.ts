@@ -83,7 +83,7 @@ describe('Longley against R', () => {
         ? computeNeweyWestCovariance(input, fit, { lag: 2 })
         : computeHeteroskedasticCovariance(input, fit, kind);
     const errors = computeStandardErrors(covariance, fit.rank);
-    // Source: fractions in Python, tests/reference/longley/make_exact_sandwich.py.
+    // Source: fractions in Python, tests/reference/longley/make-exact-sandwich.py.
     const exact = (readReferenceJson('longley/longley_exact_sandwich.json') as Record<string, string[]>)[kind]!;
     expect(countWorstDigits(errors, exact.map(Number))).toBeGreaterThan(13);
     // R's own figures hold 7.6 digits of the exact ones here.

@@ -230,33 +230,29 @@ describe('orange juice, store panel of B04, against R', { timeout: 60_000 }, () 
 });
 
 describe('orange juice, own-price elasticities', { timeout: 60_000 }, () => {
-  it(
-    'gives R’s elasticity of all eleven brands, with and without cross prices and season, by the fast kernel',
-    {},
-    () => {
-      // Source: R 4.2.2 lm, tests/reference/oj/own_price_elasticities.csv.
-      const reference = readReferenceCsv('oj/own_price_elasticities.csv');
-      const full = reference.map((row) => fitLeastSquaresFast(buildPanelModel(row['brand']!, 40, 160).input));
-      expect(full.every((fit) => !fit.isFromQr)).toBe(true);
-      expect(
-        countWorstDigits(
-          full.map((fit) => fit.coefficients[1]!),
-          readColumn(reference, 'own_price'),
-        ),
-      ).toBeGreaterThan(11);
-      const mean = full.reduce((sum, fit) => sum + fit.coefficients[1]!, 0) / full.length;
-      // Plausibility: −2.62 over 1,851 published estimates (Bijmolt, van Heerde & Pieters 2005).
-      expect(mean).toBeGreaterThan(-3.5);
-      expect(mean).toBeLessThan(-1.7);
-      const short = reference.map((row) => fitLeastSquaresFast(buildPanelModel(row['brand']!, 40, 160, true).input));
-      expect(
-        countWorstDigits(
-          short.map((fit) => fit.coefficients[1]!),
-          readColumn(reference, 'own_price_no_cross_no_season'),
-        ),
-      ).toBeGreaterThan(11);
-    },
-  );
+  it('gives R’s elasticity of all eleven brands, with and without cross prices and season, by the fast kernel', () => {
+    // Source: R 4.2.2 lm, tests/reference/oj/own_price_elasticities.csv.
+    const reference = readReferenceCsv('oj/own_price_elasticities.csv');
+    const full = reference.map((row) => fitLeastSquaresFast(buildPanelModel(row['brand']!, 40, 160).input));
+    expect(full.every((fit) => !fit.isFromQr)).toBe(true);
+    expect(
+      countWorstDigits(
+        full.map((fit) => fit.coefficients[1]!),
+        readColumn(reference, 'own_price'),
+      ),
+    ).toBeGreaterThan(11);
+    const mean = full.reduce((sum, fit) => sum + fit.coefficients[1]!, 0) / full.length;
+    // Plausibility: −2.62 over 1,851 published estimates (Bijmolt, van Heerde & Pieters 2005).
+    expect(mean).toBeGreaterThan(-3.5);
+    expect(mean).toBeLessThan(-1.7);
+    const short = reference.map((row) => fitLeastSquaresFast(buildPanelModel(row['brand']!, 40, 160, true).input));
+    expect(
+      countWorstDigits(
+        short.map((fit) => fit.coefficients[1]!),
+        readColumn(reference, 'own_price_no_cross_no_season'),
+      ),
+    ).toBeGreaterThan(11);
+  });
 
   it('gives the six published elasticities of B10, B05 and B01', () => {
     // Source: Taddy, Business Data Science (published course scripts), to the printed digits.

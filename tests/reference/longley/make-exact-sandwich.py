@@ -1,4 +1,4 @@
-# Robust standard errors of NIST Longley in exact rational arithmetic (only the last square root is rounded). Rebuild: python3 make_exact_sandwich.py
+# Robust standard errors of NIST Longley in exact rational arithmetic (only the last square root is rounded). Rebuild: python3 make-exact-sandwich.py
 from pathlib import Path
 here=Path(__file__).parent
 import json
