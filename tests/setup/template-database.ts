@@ -60,7 +60,7 @@ async function dropLeftovers(
   template: string,
 ): Promise<void> {
   const { rows } = await client.query(
-    `SELECT datname AS name, (pg_stat_file('base/' || oid || '/PG_VERSION')).modification < now() - interval '1 hour' AS "isOld"
+    `SELECT datname AS name, (pg_stat_file('base/' || oid || '/PG_VERSION', true)).modification < now() - interval '1 hour' AS "isOld"
        FROM pg_database WHERE datname ~ '^(test_[0-9]+_|template_[0-9a-f]+$)'`,
   );
   for (const { name, isOld } of rows) {
