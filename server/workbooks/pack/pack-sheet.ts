@@ -112,10 +112,19 @@ export function startWorkbook(
   return workbook;
 }
 
-/** A text as a cell can hold it: characters that no XML may carry go, and what exceeds a cell's 32,767 characters. */
+/**
+ * A text as a cell can hold it: line ends are line feeds, characters that no XML may carry go, what looks like an escape of the format
+ * (`_x000D_`) is kept as written, and what exceeds a cell's 32,767 characters is cut.
+ */
 function cleanText(text: string): string {
-  // eslint-disable-next-line no-control-regex -- control characters are exactly what must not get into the file
-  return text.replace(/[\u0000-\u0008\u000b\u000c\u000e-\u001f\ufffe\uffff]/g, '').slice(0, 32_767);
+  return (
+    text
+      .replace(/\r\n?/g, '\n')
+      // eslint-disable-next-line no-control-regex -- control characters are exactly what must not get into the file
+      .replace(/[\u0000-\u0008\u000b\u000c\u000e-\u001f\ufffe\uffff]/g, '')
+      .replace(/_(?=x[0-9A-Fa-f]{4}_)/g, '_x005F_')
+      .slice(0, 32_767)
+  );
 }
 
 /** `&` begins a code in headers and footers. */

@@ -1,8 +1,10 @@
-import { afterAll, describe, expect, it } from 'vitest';
+import { afterAll, describe, expect, it, vi } from 'vitest';
 import { openTable } from '../../../server/workbooks/reading/open-table.ts';
 import { inspectTable } from '../../../server/workbooks/reading/inspect-table.ts';
 import { UnreadableFileError } from '../../../server/workbooks/reading/unreadable-file-error.ts';
 import { buildZip, listWorkbookParts, makeFolder, openAndRead, type ZipPart } from './workbook-files.ts';
+
+vi.setConfig({ testTimeout: 60_000 });
 
 const folder = makeFolder();
 afterAll(folder.remove);

@@ -1,6 +1,8 @@
-import { afterAll, describe, expect, it } from 'vitest';
+import { afterAll, describe, expect, it, vi } from 'vitest';
 import { openTable } from '../../../server/workbooks/reading/open-table.ts';
 import { makeFolder, openAndRead } from './workbook-files.ts';
+
+vi.setConfig({ testTimeout: 60_000 });
 
 const folder = makeFolder();
 afterAll(folder.remove);

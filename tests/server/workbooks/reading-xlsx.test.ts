@@ -1,8 +1,10 @@
 import ExcelJS from 'exceljs';
-import { afterAll, describe, expect, it } from 'vitest';
+import { afterAll, describe, expect, it, vi } from 'vitest';
 import { openTable } from '../../../server/workbooks/reading/open-table.ts';
 import type { CellValue } from '../../../server/workbooks/reading/table.ts';
 import { buildZip, listWorkbookParts, makeFolder, openAndRead, readWholeTable } from './workbook-files.ts';
+
+vi.setConfig({ testTimeout: 60_000 });
 
 const folder = makeFolder();
 afterAll(folder.remove);
