@@ -40,7 +40,13 @@ export const commonTexts = {
       'forecast-category': 'Fitting and forecasting',
       'pack-build': 'Building the pack',
     },
-    message: {},
+    message: {
+      openingFile: 'Opening {{file}}',
+      readingRows: '{{rows, number}} rows read',
+      comparingRows: 'Comparing {{rows, number}} rows with what is held',
+      mergingRows: 'Putting {{rows, number}} rows in force',
+      withdrawing: 'Bringing back what was there before',
+    },
   },
   weekline: {
     label: 'Weekline: {{title}}, {{first}} to {{last}}, showing {{from}} to {{until}}',
