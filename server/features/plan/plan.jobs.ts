@@ -19,39 +19,33 @@ export const forecastCategoryJob: JobHandler = async (job) => {
 
   const total = gathered.lines.length;
   let done = 0;
-  const forecasts = await inThreads(async (forecastLine) => {
-    const results = new Array<LineForecast>(total);
-    const bySize = gathered.lines
-      .map(({ history }, index) => ({ index, size: history.reduce((sum, { sold }) => sum + sold.length, 0) }))
-      .sort((a, b) => b.size - a.size);
-    await job.report(0.02, { key: 'forecastLines', values: { done, total } });
-    await Promise.all(
-      bySize.map(async ({ index }) => {
-        results[index] = await forecastLine(gathered.lines[index]!.input);
-        done += 1;
-        await job.report(0.02 + (0.95 * done) / total, { key: 'forecastLines', values: { done, total } });
-      }),
-    );
-    return results;
-  });
+  const forecasts = new Array<LineForecast>(total);
+  const bySize = gathered.lines
+    .map(({ history }, index) => ({ index, size: history.reduce((sum, { sold }) => sum + sold.length, 0) }))
+    .sort((a, b) => b.size - a.size);
+  await job.report(0.02, { key: 'forecastLines', values: { done, total } });
+  await Promise.all(
+    bySize.map(async ({ index }) => {
+      forecasts[index] = await forecastInThread(gathered.lines[index]!.input);
+      done += 1;
+      await job.report(0.02 + (0.95 * done) / total, { key: 'forecastLines', values: { done, total } });
+    }),
+  );
 
   const runId = await inTransaction(database, (tx) => saveForecast(tx, actor, gathered, forecasts, jobId));
   return { runId, lines: total };
 };
 
-/** A pool for one job; its threads end with it. */
-async function inThreads<T>(
-  work: (forecastLine: (input: LineInput) => Promise<LineForecast>) => Promise<T>,
-): Promise<T> {
-  const pool = new Piscina<LineInput, LineForecast>({
+let pool: Piscina<LineInput, LineForecast> | null = null;
+
+/** Threads are shared by the jobs of this process and end when they have been idle for a while; idle ones don't keep it alive. */
+function forecastInThread(input: LineInput): Promise<LineForecast> {
+  pool ??= new Piscina<LineInput, LineForecast>({
     filename: new URL('../../forecasting/line-worker.ts', import.meta.url).href,
     execArgv: ['--import', 'tsx'],
-    minThreads: 1,
+    minThreads: 0,
     maxThreads: threads,
+    idleTimeout: 60_000,
   });
-  try {
-    return await work((input) => pool.run(input));
-  } finally {
-    await pool.destroy();
-  }
+  return pool.run(input);
 }

@@ -1,5 +1,5 @@
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
-import { CellConflict, LinePlan, type NewOverride } from '../../../shared/contracts/plan.ts';
+import { CellConflict, type LinePlan, type NewOverride } from '../../../shared/contracts/plan.ts';
 import {
   asOwner,
   countWritten,
