@@ -11,5 +11,11 @@ export default defineConfig({
     sourcemap: false,
     // Fonts and pictures stay files: the content security policy allows no data: addresses.
     assetsInlineLimit: 0,
+    // zod and its setting share a chunk, so that the setting is made before the first contract is built; see src/lib/no-eval.ts.
+    rolldownOptions: {
+      output: {
+        codeSplitting: { groups: [{ name: 'validation', test: /node_modules[\\/]zod|src[\\/]lib[\\/]no-eval/ }] },
+      },
+    },
   },
 });

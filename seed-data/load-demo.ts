@@ -299,14 +299,14 @@ async function workOnPlans(
   await lockLine(database, lead, lineId('Tea'), {
     version: teaFinal,
     firstWeek: week(0),
-    lastWeek: week(7),
+    lastWeek: week(horizonWeeks - 1),
     comment: null,
   });
   await finishJob(
     await startPack(database, finance, {
       categoryId: hotDrinks.id,
       firstWeek: week(0),
-      lastWeek: week(7),
+      lastWeek: week(horizonWeeks - 1),
       lineIds: [lineId('Tea')],
     }),
   );
