@@ -46,6 +46,8 @@ export const commonTexts = {
       comparingRows: 'Comparing {{rows, number}} rows with what is held',
       mergingRows: 'Putting {{rows, number}} rows in force',
       withdrawing: 'Bringing back what was there before',
+      forecastReading: 'Reading sales and calendar',
+      forecastLines: '{{done}} of {{total}} lines forecast',
     },
   },
   weekline: {
