@@ -1,5 +1,6 @@
 import type { ReactNode } from 'react';
 import { useTranslation } from 'react-i18next';
+import { RouteSteps } from './RouteSteps.tsx';
 
 type LineState = 'draft' | 'submitted' | 'locked';
 const order: LineState[] = ['draft', 'submitted', 'locked'];
@@ -33,46 +34,23 @@ export function StateMark({ state }: { state: LineState }) {
   );
 }
 
-/** The way of a line through a round: solid where passed, dotted where to come; `action` stands on the next stretch. */
+/** The way of a line through a round; `action` stands on the next stretch. */
 export function StateRoute({ state, action }: { state: LineState; action?: ReactNode }) {
   const { t } = useTranslation('common');
-  const reached = order.indexOf(state);
   return (
-    <ol className="relative flex items-start" aria-label={t('state.route')}>
-      {order.map((step, index) => (
-        <li key={step} className="flex items-start" aria-current={step === state ? 'step' : undefined}>
-          {index > 0 && (
-            <span className="flex h-8 items-center" aria-hidden={index !== reached + 1 || undefined}>
-              <Stretch isPassed={index <= reached} />
-              {index === reached + 1 && action}
-              {index === reached + 1 && action !== undefined && <Stretch isPassed={false} />}
-            </span>
-          )}
-          <span className="flex w-[58px] flex-col items-center">
-            <svg className="my-[9px]" width="14" height="14" viewBox="0 0 14 14" aria-hidden="true">
-              <g transform="translate(0 1)">
-                <Tablet state={step} colour={index <= reached ? 'var(--ink)' : 'var(--rule)'} />
-              </g>
-            </svg>
-            <span className={`text-small ${step === state ? 'font-[640] text-ink' : 'text-soft'}`}>
-              {t(`state.${step}`)}
-            </span>
-          </span>
-        </li>
-      ))}
-    </ol>
-  );
-}
-
-function Stretch({ isPassed }: { isPassed: boolean }) {
-  return (
-    <svg className="-mx-3" width="64" height="2" aria-hidden="true">
-      <path
-        d="M0 1H64"
-        stroke={isPassed ? 'var(--ink)' : 'var(--rule)'}
-        strokeWidth="2"
-        strokeDasharray={isPassed ? undefined : '2 4'}
-      />
-    </svg>
+    <RouteSteps
+      label={t('state.route')}
+      reached={order.indexOf(state)}
+      action={action}
+      steps={order.map((step) => ({
+        name: step,
+        label: t(`state.${step}`),
+        mark: (colour) => (
+          <g transform="translate(0 3)">
+            <Tablet state={step} colour={colour} />
+          </g>
+        ),
+      }))}
+    />
   );
 }

@@ -37,6 +37,14 @@ const below = 34;
 const edge = 24;
 const handleWidth = 50;
 
+/** From and to, px. */
+type Span = [number, number];
+
+/** Keeps the weekline's room while it is fetched, so that nothing jumps. */
+export function WeeklineRoom() {
+  return <div className="h-[137px] border-t border-line min-[1440px]:h-[161px]" aria-hidden="true" />;
+}
+
 function useWidth(): [(element: HTMLElement | null) => void, number] {
   const [element, setElement] = useState<HTMLElement | null>(null);
   const [width, setWidth] = useState(1440);
@@ -230,6 +238,17 @@ function Band({ weeks, soldWeeks, width, range, onRangeChange, caption }: BandPr
     onMove: onRangeChange && ((positions: [number, number]) => onRangeChange(toRange(positions, firstWeek))),
   });
   const words = caption ?? t('weekline.shown', { count: last - first + 1 });
+  const middle = (windowLeft + windowRight) / 2;
+  const hasRoomForMonths = windowRight - windowLeft > 480;
+  const hidden: Span[] = !onRangeChange
+    ? []
+    : hasRoomForMonths
+      ? [
+          [windowLeft - handleWidth - 4, windowLeft + 8],
+          [middle - 4 * words.length - 16, middle + 4 * words.length + 16],
+          [windowRight - (windowRight + handleWidth > width ? handleWidth + 4 : 8), windowRight + handleWidth + 4],
+        ]
+      : [[windowLeft - handleWidth - 4, windowRight + handleWidth + 4]];
   const hasRoomInside = windowRight - windowLeft > 7 * words.length;
 
   return (
@@ -260,12 +279,6 @@ function Band({ weeks, soldWeeks, width, range, onRangeChange, caption }: BandPr
       <path d={ticks.join('')} stroke="var(--sheet)" strokeWidth="4" />
       <path d={ticks.join('')} stroke="var(--ink)" strokeWidth="1.5" />
       <path d={`M0 ${foot + 0.5}H${width}`} stroke="var(--ink)" />
-      <Months
-        weeks={weeks}
-        xOf={xOf}
-        foot={foot}
-        hidden={[windowLeft - handleWidth - 4, windowRight + handleWidth + 4]}
-      />
       <Pennants weeks={weeks} xOf={xOf} first={first} last={last} />
       {findRuns(weeks.length, (position) => weeks[position]?.isLocked ?? false).map(([from, to]) => (
         <rect key={from} x={xOf(from)} y={foot} width={xOf(to + 1) - xOf(from)} height="5" fill="var(--ink)" />
@@ -296,30 +309,37 @@ function Band({ weeks, soldWeeks, width, range, onRangeChange, caption }: BandPr
           )}
         </g>
       )}
-      <Slider {...sliderOf('both')} label={t('weekline.move')}>
-        <rect x={windowLeft} y={foot + 7.5} width={windowRight - windowLeft} height="19" fill="var(--paper)" />
-        <path
-          d={`M${windowLeft} ${foot + 7.5}H${windowRight}M${windowLeft} ${foot + 26.5}H${windowRight}`}
-          stroke="var(--moss)"
-        />
-        {hasRoomInside && (
-          <text x={(windowLeft + windowRight) / 2} y={foot + 21} textAnchor="middle" fontSize="11" fill="var(--ink)">
-            {words}
-          </text>
-        )}
-      </Slider>
-      <Slider {...sliderOf('first')} label={t('weekline.firstShown')}>
-        <HandleShape x={windowLeft} side="first" foot={foot} label={shortWeekLabel(range.firstWeek)} />
-      </Slider>
-      <Slider {...sliderOf('last')} label={t('weekline.lastShown')}>
-        <HandleShape
-          x={windowRight}
-          side="last"
-          foot={foot}
-          label={shortWeekLabel(range.lastWeek)}
-          flip={windowRight + handleWidth > width}
-        />
-      </Slider>
+      {onRangeChange ? (
+        <>
+          <Slider {...sliderOf('both')} label={t('weekline.move')}>
+            <rect x={windowLeft} y={foot + 7.5} width={windowRight - windowLeft} height="19" fill="var(--paper)" />
+            <path
+              d={`M${windowLeft} ${foot + 7.5}H${windowRight}M${windowLeft} ${foot + 26.5}H${windowRight}`}
+              stroke="var(--moss)"
+            />
+            {hasRoomInside && (
+              <text x={middle} y={foot + 21} textAnchor="middle" fontSize="11" fill="var(--ink)">
+                {words}
+              </text>
+            )}
+          </Slider>
+          <Slider {...sliderOf('first')} label={t('weekline.firstShown')}>
+            <HandleShape x={windowLeft} side="first" foot={foot} label={shortWeekLabel(range.firstWeek)} />
+          </Slider>
+          <Slider {...sliderOf('last')} label={t('weekline.lastShown')}>
+            <HandleShape
+              x={windowRight}
+              side="last"
+              foot={foot}
+              label={shortWeekLabel(range.lastWeek)}
+              flip={windowRight + handleWidth > width}
+            />
+          </Slider>
+        </>
+      ) : (
+        <path d={`M${windowLeft} ${top}V${foot}M${windowRight} ${top}V${foot}`} stroke="var(--rule)" />
+      )}
+      <Months weeks={weeks} xOf={xOf} foot={foot} hidden={hidden} />
     </svg>
   );
 }
@@ -462,7 +482,8 @@ function Months({
   weeks: BandWeek[];
   xOf: (position: number) => number;
   foot: number;
-  hidden: [number, number];
+  /** Where handles and words stand. */
+  hidden: Span[];
 }) {
   const marks: { x: number; text: string; isYear: boolean }[] = [];
   let room = -Infinity;
@@ -478,9 +499,9 @@ function Months({
     room = x + (isYear ? 40 : 18);
   });
   return marks.map(({ x, text, isYear }) => (
-    <g key={`${x}-${text}`} aria-hidden="true">
+    <g key={`${x}-${text}`} aria-hidden="true" pointerEvents="none">
       {isYear && x > xOf(0) && <path d={`M${x + 0.5} 40V${foot}`} stroke="var(--rule)" strokeDasharray="1 3" />}
-      {(x + (isYear ? 32 : 10) < hidden[0] || x > hidden[1]) && (
+      {hidden.every(([from, to]) => x + (isYear ? 32 : 10) < from || x > to) && (
         <text
           x={x + (isYear ? 2 : 0)}
           y={foot + 17}

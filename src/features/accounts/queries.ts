@@ -16,7 +16,8 @@ function useEntry<Input>(send: (input: Input) => Promise<Session>) {
   return useMutation({
     mutationFn: send,
     onSuccess: (session) => {
-      client.clear();
+      // What another person was shown is forgotten; the invitation in view is spent and must not be asked for again.
+      client.removeQueries({ predicate: ({ queryKey }) => queryKey[0] !== 'invitation' });
       client.setQueryData(sessionQuery.queryKey, session);
     },
   });

@@ -57,10 +57,11 @@ function useRangeChange<Input, Answer>(send: (input: Input) => Promise<Answer>) 
   const client = useQueryClient();
   return useMutation({
     mutationFn: send,
-    onSuccess: () =>
-      Promise.all(
-        ['categories', 'waiting', 'plan', 'calendar'].map((key) => client.invalidateQueries({ queryKey: [key] })),
-      ),
+    onSuccess: () => {
+      for (const key of ['categories', 'waiting', 'plan', 'calendar']) {
+        void client.invalidateQueries({ queryKey: [key] });
+      }
+    },
   });
 }
 

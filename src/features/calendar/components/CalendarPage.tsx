@@ -12,7 +12,7 @@ import {
 import { ActLink, Button } from '../../../components/Button.tsx';
 import { Page, PageHead } from '../../../components/Page.tsx';
 import { EmptyState, QueryStates } from '../../../components/states.tsx';
-import { Weekline, type WeekRange } from '../../../components/Weekline.tsx';
+import { Weekline, WeeklineRoom, type WeekRange } from '../../../components/Weekline.tsx';
 import { useCategoryInView, withCategory } from '../../../lib/categories.ts';
 import { categoryPlanQuery } from '../../../lib/category-plan.ts';
 import { useMay } from '../../../lib/session.ts';
@@ -95,7 +95,9 @@ function CategoryCalendar({ category, firstWeekday }: { category: Category; firs
             range={{ firstWeek, lastWeek: addWeeks(firstWeek, weeks - 1) }}
             onRangeChange={changeRange}
           />
-        ) : undefined
+        ) : (
+          plan.isLoading && <WeeklineRoom />
+        )
       }
     >
       <PageHead

@@ -60,11 +60,11 @@ function LineView({ view }: { view: LineFitView }) {
         </div>
       ) : (
         <div className="mt-4 grid grid-cols-1 gap-x-11 gap-y-8 min-[1100px]:grid-cols-[minmax(0,7fr)_minmax(0,5fr)]">
-          <div className="grid content-start gap-8">
+          <div className="grid min-w-0 grid-cols-[minmax(0,1fr)] content-start gap-8">
             <EffectTable coefficients={fit.coefficients} />
             <ExpertTable coefficients={fit.coefficients} />
           </div>
-          <div className="grid content-start gap-8">
+          <div className="grid min-w-0 grid-cols-[minmax(0,1fr)] content-start gap-8">
             <FitFacts fit={fit} />
             <FindingList findings={fit.findings} />
             <p className="text-small text-soft">{t('caution')}</p>

@@ -171,7 +171,7 @@ function SampleTable({
                 <td
                   key={column.index}
                   className={`max-w-[220px] overflow-hidden border-r border-b border-line bg-sheet px-2 py-1 text-ellipsis ${
-                    /^[-+\d.,\s%]+$/.test(text) ? 'text-right' : ''
+                    /^[-+−]?[\d.,\s]+%?$/.test(text) ? 'text-right' : ''
                   } ${column.meaning === 'ignore' ? 'text-soft' : ''}`}
                 >
                   {text}

@@ -97,8 +97,8 @@ function OneImport({ detail }: { detail: ImportDetail }) {
       </div>
 
       {mapping && (
-        <div className="mt-4 grid grid-cols-1 gap-x-10 gap-y-8 min-[1100px]:grid-cols-[minmax(0,6fr)_minmax(0,5fr)]">
-          <div className="grid min-w-0 content-start gap-8">
+        <div className="mt-4 grid grid-cols-1 gap-x-10 gap-y-8 min-[1100px]:grid-cols-[minmax(0,7fr)_minmax(0,5fr)]">
+          <div className="grid min-w-0 grid-cols-[minmax(0,1fr)] content-start gap-8">
             <FileReading
               detail={detail}
               mapping={mapping}
@@ -110,7 +110,7 @@ function OneImport({ detail }: { detail: ImportDetail }) {
               <WeeksBeside totals={detail.totals} isSales={mapping.kind === 'sales'} />
             )}
           </div>
-          <div className="grid min-w-0 content-start gap-8">
+          <div className="grid min-w-0 grid-cols-[minmax(0,1fr)] content-start gap-8">
             {hasNewNames && detail.unknown && <NewNames unknown={detail.unknown} isYes={isYes} onYes={setYes} />}
             {detail.totals && (
               <Section title={t('findings.title')}>

@@ -5,7 +5,7 @@ import type { ImportList, ImportSummary } from '../../../../shared/contracts/sal
 import { addWeeks } from '../../../../shared/domain/weeks.ts';
 import { Page, PageHead, Section } from '../../../components/Page.tsx';
 import { EmptyState, QueryStates } from '../../../components/states.tsx';
-import { Weekline } from '../../../components/Weekline.tsx';
+import { Weekline, WeeklineRoom } from '../../../components/Weekline.tsx';
 import { useCategoryInView } from '../../../lib/categories.ts';
 import { categoryPlanQuery } from '../../../lib/category-plan.ts';
 import { useTitle } from '../../../lib/use-title.ts';
@@ -35,7 +35,9 @@ export function SalesPage() {
               lastWeek: addWeeks(weekline.firstWeek, weekline.sold.length - 1),
             }}
           />
-        ) : undefined
+        ) : (
+          plan.isLoading && <WeeklineRoom />
+        )
       }
     >
       <PageHead title={title} lead={t('lead')} />

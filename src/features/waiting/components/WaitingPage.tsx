@@ -11,7 +11,7 @@ import {
 } from '../../../../shared/domain/weeks.ts';
 import { Page } from '../../../components/Page.tsx';
 import { QueryStates } from '../../../components/states.tsx';
-import { Weekline } from '../../../components/Weekline.tsx';
+import { Weekline, WeeklineRoom } from '../../../components/Weekline.tsx';
 import { useCategoryInView } from '../../../lib/categories.ts';
 import { categoryPlanQuery } from '../../../lib/category-plan.ts';
 import { formatSignedPercent, formatUnits, formatWeekday } from '../../../lib/format.ts';
@@ -44,7 +44,9 @@ export function WaitingPage() {
               lastWeek: addWeeks(lastSold, Math.min(13, weekline.planned.length)),
             }}
           />
-        ) : undefined
+        ) : (
+          plan.isLoading && <WeeklineRoom />
+        )
       }
     >
       <div className="grid grid-cols-1 gap-x-9 gap-y-8 min-[1100px]:grid-cols-[minmax(0,3fr)_minmax(0,2fr)] min-[1440px]:gap-x-12">
