@@ -5,7 +5,7 @@ import { build } from 'vite';
 import { projectFolder } from './data-folder.ts';
 import { PlainFailure } from './plain-failure.ts';
 
-const sources = ['src', 'shared', 'index.html', 'vite.config.ts', 'tailwind.config.ts', 'package-lock.json'];
+const sources = ['src', 'shared', 'public', 'index.html', 'vite.config.ts', 'tailwind.config.ts', 'package-lock.json'];
 const stampName = '.sources';
 
 /**

@@ -15,10 +15,10 @@ export interface TestDatabase {
   drop: () => Promise<void>;
 }
 
-/** A fresh copy of the migrated template database, empty of rows but for what migrations lay down. */
-export async function cloneDatabase(cluster: TestCluster): Promise<TestDatabase> {
+/** A fresh copy of a template database; by default of the migrated one, empty of rows but for what migrations lay down. */
+export async function cloneDatabase(cluster: TestCluster, template = cluster.template): Promise<TestDatabase> {
   const name = `test_${process.pid}_${randomBytes(5).toString('hex')}`;
-  await createDatabase(cluster, name, cluster.template);
+  await createDatabase(cluster, name, template);
   return {
     name,
     applicationUrl: databaseUrl(cluster, 'fairweek_application', name),

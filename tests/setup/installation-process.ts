@@ -5,9 +5,8 @@ import { findFreePort } from '../../server/cli/ports.ts';
 import { startServices, type ServiceEnvironment } from '../../server/cli/services.ts';
 import { offerFirstAdministrator } from '../../server/features/accounts/accounts.service.ts';
 import { openDatabase } from '../../server/lib/database.ts';
-import { readEnv } from '../../server/lib/env.ts';
-import { loadDemo } from '../../seed-data/load-demo.ts';
 import { cloneDatabase } from './clone-database.ts';
+import { prepareDemoTemplate } from './demo-template.ts';
 import type { InstallationFacts } from './installation.ts';
 import { prepareTestCluster } from './template-database.ts';
 
@@ -21,7 +20,9 @@ const stopAsked = new Promise<void>((resolve) => {
   process.on('disconnect', () => resolve());
 });
 
-const database = await cloneDatabase(await prepareTestCluster());
+const cluster = await prepareTestCluster();
+const demo = hasDemo ? await prepareDemoTemplate(cluster) : null;
+const database = await cloneDatabase(cluster, demo?.template);
 const port = await findFreePort(54_700 + (process.pid % 500));
 const address = `http://127.0.0.1:${port}`;
 const environment: ServiceEnvironment = {
@@ -35,11 +36,15 @@ const environment: ServiceEnvironment = {
 };
 try {
   await buildClientIfChanged();
-  const { signIns } = hasDemo ? await loadDemo({ env: readEnv({ ...environment }) }) : { signIns: [] };
   const firstAdministratorLink = hasDemo ? null : await offerLink();
   const services = await startServices(environment, join(prepareDataFolder('test'), 'logs', database.name));
   await services.ready;
-  const facts: InstallationFacts = { address, signIns, firstAdministratorLink, ownerUrl: database.ownerUrl };
+  const facts: InstallationFacts = {
+    address,
+    signIns: demo?.signIns ?? [],
+    firstAdministratorLink,
+    ownerUrl: database.ownerUrl,
+  };
   process.send?.(facts);
   await stopAsked;
   await services.stop();

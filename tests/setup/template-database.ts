@@ -1,6 +1,6 @@
 import { createHash } from 'node:crypto';
 import { readdirSync, readFileSync } from 'node:fs';
-import { join } from 'node:path';
+import { join, relative } from 'node:path';
 import type { TestProject } from 'vitest/node';
 import {
   createDatabase,
@@ -38,7 +38,7 @@ export default async function setUp(project: TestProject): Promise<void> {
 export async function prepareTestCluster(): Promise<TestCluster> {
   const { port, rolePasswords } = await ensureCluster('test');
   const access = { port, rolePasswords };
-  const template = `template_${fingerprintMigrations()}`;
+  const template = `template_${fingerprintSources(['server/migrations', 'server/lib/migrate.ts'])}`;
   await withClient(databaseUrl(access, 'owner', 'postgres'), async (client) => {
     await client.query('SELECT pg_advisory_lock($1)', [templateLock]);
     await dropLeftovers(client, template);
@@ -61,7 +61,7 @@ async function dropLeftovers(
 ): Promise<void> {
   const { rows } = await client.query(
     `SELECT datname AS name, (pg_stat_file('base/' || oid || '/PG_VERSION', true)).modification < now() - interval '1 hour' AS "isOld"
-       FROM pg_database WHERE datname ~ '^(test_[0-9]+_|template_[0-9a-f]+$)'`,
+       FROM pg_database WHERE datname ~ '^(test_[0-9]+_|(template|demo)_[0-9a-f]+$)'`,
   );
   for (const { name, isOld } of rows) {
     const process = /^test_(\d+)_/.exec(name)?.[1];
@@ -84,14 +84,17 @@ function isAlive(pid: number): boolean {
   }
 }
 
-function fingerprintMigrations(): string {
-  const folder = join(projectFolder, 'server', 'migrations');
-  const files = readdirSync(folder, { recursive: true, withFileTypes: true })
-    .filter((entry) => entry.isFile())
-    .map((entry) => join(entry.parentPath, entry.name))
-    .concat(join(projectFolder, 'server', 'lib', 'migrate.ts'))
-    .sort();
+/** The part of a template's name that changes with the files it is made by: those given and all in the folders given. */
+export function fingerprintSources(sources: readonly string[]): string {
   const hash = createHash('sha256');
-  for (const file of files) hash.update(file).update(readFileSync(file));
+  for (const file of sources.flatMap(listFiles).sort())
+    hash.update(file).update(readFileSync(join(projectFolder, file)));
   return hash.digest('hex').slice(0, 12);
+}
+
+function listFiles(source: string): string[] {
+  if (source.endsWith('.ts')) return [source];
+  return readdirSync(join(projectFolder, source), { recursive: true, withFileTypes: true })
+    .filter((entry) => entry.isFile())
+    .map((entry) => relative(projectFolder, join(entry.parentPath, entry.name)));
 }
