@@ -26,10 +26,10 @@ const WEEKS_PER_PAGE = 17;
 /** The model's rows below the plan, in the order in which they are written. */
 const MODEL_ROWS = [
   { key: 'mean', label: 'Model, expected' },
-  { key: 'p10', label: 'Model, 80 % range from' },
-  { key: 'p90', label: 'to' },
-  { key: 'p2_5', label: 'Model, 95 % range from' },
-  { key: 'p97_5', label: 'to' },
+  { key: 'p10', label: 'Model, 80 % from' },
+  { key: 'p90', label: 'Model, 80 % to' },
+  { key: 'p2_5', label: 'Model, 95 % from' },
+  { key: 'p97_5', label: 'Model, 95 % to' },
 ] as const;
 
 export function placeLine(line: PackLine, weeks: number): LinePlaces {
@@ -143,10 +143,9 @@ export function writeLineSheet(sheet: PackSheet, content: PackContent, line: Pac
   sheet.skip();
   sheet.write(
     [
-      {
-        value: `Price paid per unit that is expected, ${content.currency}; to the right the net value of each row`,
-        style: STYLES.heading,
-      },
+      { value: `Expected price per unit, ${content.currency}`, style: STYLES.heading },
+      ...Array.from({ length: places.totalColumn - 1 }, () => null),
+      { value: 'Net value', style: STYLES.columnBareRight },
     ],
     20,
   );

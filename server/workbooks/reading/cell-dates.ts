@@ -2,6 +2,8 @@ import { toDayNumber, toIsoDate } from '../../../shared/domain/weeks.ts';
 
 const DAY_ZERO_1900 = toDayNumber('1899-12-30');
 const DAYS_1904 = 1462;
+/** The same few hundred days stand in every row of a file. */
+const knownDates = new Map<number, string>();
 
 /** Date formats among the built-in ones (ECMA-376 part 1, §18.8.30), times of day and durations left out. */
 const BUILT_IN_DATE_FORMATS = new Set([
@@ -29,5 +31,10 @@ export function isDateFormat(formatId: number, formatCode: string | undefined): 
 export function readSerialDate(serial: number, hasDatesFrom1904: boolean): string | null {
   const day = Math.floor(serial + (hasDatesFrom1904 ? DAYS_1904 : 0));
   if (!(day >= 1 && day <= 2_958_465)) return null;
-  return toIsoDate(DAY_ZERO_1900 + (day < 60 ? day + 1 : day));
+  let date = knownDates.get(day);
+  if (date === undefined) {
+    date = toIsoDate(DAY_ZERO_1900 + (day < 60 ? day + 1 : day));
+    if (knownDates.size < 20_000) knownDates.set(day, date);
+  }
+  return date;
 }

@@ -3,7 +3,7 @@ import { isDateFormat } from './cell-dates.ts';
 import { flattenBatches, type OpenedTable, type ReadingLimits, type SkippedSheet, type TableSheet } from './table.ts';
 import { UnreadableFileError } from './unreadable-file-error.ts';
 import { openArchive, toSuspicious, type WorkbookArchive } from './workbook-archive.ts';
-import { scanMergedRanges } from './xlsx-merged-ranges.ts';
+import { scanMergedRanges, type MergedRange } from './xlsx-merged-ranges.ts';
 import { streamSheetRows, type SheetContext } from './xlsx-sheet.ts';
 import { streamXml, unescapeText } from './xml-stream.ts';
 
@@ -42,8 +42,9 @@ export async function openXlsx(path: string, limits: ReadingLimits): Promise<Ope
 }
 
 function buildSheet(archive: WorkbookArchive, part: string, context: SheetContext, limits: ReadingLimits): TableSheet {
+  let mergedRanges: MergedRange[] | null = null;
   const batches = async function* () {
-    const mergedRanges = await scanMergedRanges(archive.read(part));
+    mergedRanges ??= await scanMergedRanges(archive.read(part));
     yield* streamSheetRows(archive.read(part), context, mergedRanges, limits);
   };
   return { name: context.name, batches, rows: () => flattenBatches(batches()) };
