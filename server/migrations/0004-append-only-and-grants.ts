@@ -49,6 +49,7 @@ begin
     grant select, insert, update, delete on all tables in schema public to fairweek_application;
     grant usage, select on all sequences in schema public to fairweek_application;
     revoke update, delete, truncate on ${appendOnly.join(', ')} from fairweek_application;
+    revoke delete, truncate on category, product_line, item, location, "import" from fairweek_application;
     revoke insert, update, delete on applied_migration from fairweek_application;
   end if;
   if exists (select from pg_roles where rolname = 'fairweek_reader') then

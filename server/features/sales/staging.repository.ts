@@ -228,28 +228,40 @@ export async function mergeSales(tx: Tx, importId: number, revisionId: number): 
  * already. Returns how many keys were touched and how many of them have an entry again.
  */
 export async function restoreEarlierSales(tx: Tx, importId: number): Promise<{ touched: number; restored: number }> {
+  const span = await selectRow<{ first: string | null; last: string | null }>(
+    tx,
+    `select to_char(min(week_start), 'YYYY-MM-DD') as first, to_char(max(week_start), 'YYYY-MM-DD') as last from sales_entry where import_id = $importId`,
+    { importId },
+  );
+  const weeks = { first: span?.first ?? null, last: span?.last ?? null };
   await execute(
     tx,
     `create temporary table withdrawn_key on commit drop as
-     select item_id, location_id, week_start from sales_week where import_id = $importId`,
-    { importId },
+     select w.item_id, w.location_id, w.week_start
+     from sales_entry e join sales_week w using (item_id, location_id, week_start)
+     where e.import_id = $importId and w.import_id = $importId and e.week_start between $first::date and $last::date`,
+    { importId, ...weeks },
   );
   await execute(tx, `analyze withdrawn_key`);
-  await execute(tx, `delete from sales_week where import_id = $importId`, { importId });
+  await execute(
+    tx,
+    `delete from sales_week w using withdrawn_key k
+     where w.item_id = k.item_id and w.location_id = k.location_id and w.week_start = k.week_start`,
+  );
   const row = await selectRow<{ touched: number; restored: number }>(
     tx,
-    `with span as (select min(week_start) as first_week, max(week_start) as last_week from withdrawn_key),
-     restored as (
+    `with restored as (
        insert into sales_week (item_id, location_id, week_start, import_id, revision_id, ${measures})
        select distinct on (e.item_id, e.location_id, e.week_start) e.item_id, e.location_id, e.week_start, e.import_id, e.revision_id, ${measures}
        from sales_entry e
        join withdrawn_key k using (item_id, location_id, week_start)
        join "import" m on m.id = e.import_id and m.state = 'accepted'
-       where e.week_start between (select first_week from span) and (select last_week from span)
+       where e.week_start between $first::date and $last::date
        order by e.item_id, e.location_id, e.week_start, e.revision_id desc
        returning 1
      )
      select (select count(*) from withdrawn_key)::int as touched, (select count(*) from restored)::int as restored`,
+    weeks,
   );
   return row ?? { touched: 0, restored: 0 };
 }
