@@ -1,11 +1,13 @@
 import { createWriteStream, readFileSync, readdirSync } from 'node:fs';
 import { join } from 'node:path';
-import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { afterAll, beforeAll, describe, expect, it, vi } from 'vitest';
 import type { PackContent } from '../../../server/workbooks/pack/pack-content.ts';
 import { writePack } from '../../../server/workbooks/pack/write-pack.ts';
 import { HOSTILE_TEXTS, addUpLines, makePackContent } from '../../server/workbooks/pack-example.ts';
 import { makeFolder } from '../../server/workbooks/workbook-files.ts';
 import { convertWithLibreOffice, dropStoredResults, readWithOpenpyxl, type SeenCell } from './spreadsheet-programs.ts';
+
+vi.setConfig({ testTimeout: 180_000 });
 
 /** Sources: LibreOffice Calc and openpyxl, both as Debian packages them. */
 describe('the pack in other programs', () => {

@@ -1,6 +1,6 @@
 import { join } from 'node:path';
 import { readFileSync } from 'node:fs';
-import { afterAll, describe, expect, it } from 'vitest';
+import { afterAll, describe, expect, it, vi } from 'vitest';
 import { inspectTable } from '../../../server/workbooks/reading/inspect-table.ts';
 import { readImportRows, type ImportRow } from '../../../server/workbooks/reading/import-rows.ts';
 import type { TableRow } from '../../../server/workbooks/reading/table.ts';
@@ -8,6 +8,8 @@ import { openTable } from '../../../server/workbooks/reading/open-table.ts';
 import { listWeeks, weekLabel } from '../../../shared/domain/weeks.ts';
 import { makeFolder, openAndRead } from '../../server/workbooks/workbook-files.ts';
 import { convertWithLibreOffice, writeWithOpenpyxl } from './spreadsheet-programs.ts';
+
+vi.setConfig({ testTimeout: 180_000 });
 
 /** Sources: files written by LibreOffice Calc and openpyxl, both as Debian packages them. */
 describe('files that other programs wrote', () => {
