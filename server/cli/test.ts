@@ -125,7 +125,7 @@ function runProgram(
     const child = spawn(join(projectFolder, 'node_modules', '.bin', program ?? ''), args, {
       cwd: projectFolder,
       stdio: ['ignore', 'inherit', 'inherit'],
-      env: { ...process.env, ...(process.stdout.isTTY ? {} : { NO_COLOR: '1' }), ...environment },
+      env: { ...process.env, ...environment },
     });
     stopping.onStop = () => child.kill('SIGTERM');
     child.on('error', (error) => {
