@@ -140,5 +140,5 @@ export function placePennants(
 export function columnWidth(figures: string): number {
   let width = 0;
   for (const character of figures) width += /\d/.test(character) ? 7.5 : 3.6;
-  return Math.max(47, Math.ceil(width) + 13);
+  return Math.max(47, Math.ceil(width) + 15);
 }

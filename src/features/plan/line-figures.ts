@@ -105,13 +105,17 @@ export function computeFigures(plan: LinePlan, pending: readonly PendingEdit[]):
 }
 
 /** What a row shows. History and plan by position of the week; marks by position of the planned week. */
-export interface RowFigures {
-  history: (number | null)[];
-  /** Series of the row that had a gap in that week of history; not counted for the total. */
-  gaps: number[];
+export interface RowFigures extends RowHistory {
   model: number[];
   plan: number[];
   marks: CellMarks[];
+}
+
+/** The part of a row that no edit changes. */
+export interface RowHistory {
+  history: (number | null)[];
+  /** Series of the row that had a gap in that week of history; not counted for the total. */
+  gaps: number[];
 }
 
 export interface CellMarks {
@@ -149,10 +153,8 @@ function cleanSum(sum: number): number {
   return Number.isInteger(sum) ? sum : Math.round(sum * 1e6) / 1e6;
 }
 
-export function computeRow(plan: LinePlan, figures: LineFigures, row: GridRow): RowFigures {
+export function computeHistory(plan: LinePlan, row: GridRow): RowHistory {
   const series = row.seriesIndexes.flatMap((index) => plan.series[index] ?? []);
-  const planArrays = row.seriesIndexes.map((index) => figures.plan[index]);
-  const models = series.map(({ model }) => model);
   const historyWeeks = series[0]?.units.length ?? 0;
   const history: (number | null)[] = [];
   for (let week = 0; week < historyWeeks; week += 1) {
@@ -167,10 +169,16 @@ export function computeRow(plan: LinePlan, figures: LineFigures, row: GridRow): 
   if (row.kind !== 'total') {
     for (const { gapAt } of series) for (const week of gapAt) gaps[week] = (gaps[week] ?? 0) + 1;
   }
+  return { history, gaps };
+}
+
+export function computeRow(plan: LinePlan, figures: LineFigures, row: GridRow, held: RowHistory): RowFigures {
+  const planArrays = row.seriesIndexes.map((index) => figures.plan[index]);
+  const models = row.seriesIndexes.map((index) => plan.series[index]?.model);
   const own = figures.ownOverrides.get(normalScopeKey(row.scope, plan));
   const pending = figures.pendingWeeks.get(normalScopeKey(row.scope, plan));
   const range = findRange(plan, row);
-  const result: RowFigures = { history, gaps, model: [], plan: [], marks: [] };
+  const result: RowFigures = { ...held, model: [], plan: [], marks: [] };
   for (let week = 0; week < plan.planWeeks; week += 1) {
     const value = sumAt(planArrays, week);
     const ofScope = own?.[week] ?? [];

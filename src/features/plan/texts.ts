@@ -22,8 +22,8 @@ export const planTexts = {
   },
   cell: {
     week: 'week {{week}} of {{year}}',
-    plan: 'plan {{figure}}',
-    sold: 'sold {{figure}}',
+    plan: 'plan',
+    sold: 'sold',
     unknown: 'nothing known',
     overridden: 'overridden',
     through: 'moved by an override above or below',

@@ -181,7 +181,7 @@ function Side({
       <p className="my-1">
         <span className="over text-[32px]/[38px]">{formatNumber(value)}</span>
       </p>
-      <dl className="grid grid-cols-[64px_1fr] gap-x-2">
+      <dl className="grid grid-cols-[50px_1fr] gap-x-2">
         {facts.map(([term, fact]) =>
           fact === null || fact === '' ? null : (
             <div key={term} className="contents">

@@ -1,9 +1,9 @@
 import type { Row } from '@tanstack/react-table';
 import { memo, useEffect, useRef, type KeyboardEvent } from 'react';
-import { useTranslation } from 'react-i18next';
 import { ForkMark, RingMark } from '../../../components/marks.tsx';
 import { formatNumber } from '../../../lib/format.ts';
 import type { GridColumn } from '../grid-columns.ts';
+import type { CellMarks } from '../line-figures.ts';
 import type { gridFeatures, GridViewRow } from '../grid-table.ts';
 
 export interface EditState {
@@ -17,6 +17,22 @@ export interface EditState {
 export interface RowHandlers {
   /** Ends editing: `text` null drops it; `move` says where to go on. */
   finishEdit: (text: string | null, move: { key: string; shiftKey: boolean } | null) => void;
+}
+
+/** Words of a cell's name, translated once for the whole grid. `weeks` by position of the column. */
+export interface CellWords {
+  weeks: readonly string[];
+  plan: string;
+  sold: string;
+  unknown: string;
+  own: string;
+  through: string;
+  look: string;
+  decision: string;
+  outside: string;
+  pending: string;
+  locked: string;
+  gap: string;
 }
 
 interface GridRowViewProps {
@@ -35,11 +51,11 @@ interface GridRowViewProps {
   tabColumn: number;
   editing: EditState | null;
   handlers: RowHandlers;
+  words: CellWords;
 }
 
 export const GridRowView = memo(function GridRowView(props: GridRowViewProps) {
-  const { row, index, top, columns, lefts, widths, shown, selectedFirst, selectedLast, editing } = props;
-  const { t } = useTranslation('plan');
+  const { row, index, top, columns, lefts, widths, selectedFirst, selectedLast, editing } = props;
   const { name, heading, figures, lockedAt, isTotal } = row.original;
   return (
     <div
@@ -58,75 +74,118 @@ export const GridRowView = memo(function GridRowView(props: GridRowViewProps) {
       >
         {heading}
       </div>
-      {shown.map((at) => {
+      {props.shown.map((at) => {
         const column = columns[at];
         if (!column) return null;
         const isPlan = column.kind === 'plan';
-        const value = row.getValue<number | null>(column.weekStart);
-        const marks = isPlan ? figures.marks[column.index] : undefined;
-        const isLocked = isPlan && lockedAt[column.index] === true;
-        const gaps = isPlan ? 0 : (figures.gaps[column.index] ?? 0);
-        const isActive = props.activeColumn === at;
-        const isEditing = editing?.column === at;
-        const figure = value === null ? '–' : formatNumber(value);
-        const classes = ['plan-cell'];
-        if (isPlan) classes.push('is-plan');
-        if (isLocked) classes.push('is-locked');
-        if (isActive) classes.push('is-active');
-        if (column.isBeforeSeam) classes.push('is-before-seam');
-        if (marks?.isPending) classes.push('is-pending');
-        let figureClass: string | undefined;
-        if (marks?.overridden === 'own') figureClass = 'over';
-        else if (marks?.overridden === 'through') figureClass = 'over-through';
-        else if (gaps > 0) figureClass = 'gap-figure';
-        const words = [
-          name,
-          t('cell.week', { week: Number(column.fullLabel.slice(-2)), year: column.fullLabel.slice(0, 4) }),
-          isPlan ? t('cell.plan', { figure }) : value === null ? t('cell.unknown') : t('cell.sold', { figure }),
-        ];
-        if (marks?.overridden === 'own') words.push(t('cell.overridden'));
-        if (marks?.overridden === 'through') words.push(t('cell.through'));
-        if (marks?.isDueAnotherLook) words.push(t('cell.look'));
-        if (marks?.needsDecision) words.push(t('cell.decision'));
-        if (marks?.isOutsideRange) words.push(t('cell.outside'));
-        if (marks?.isPending) words.push(t('cell.pending'));
-        if (isLocked) words.push(t('cell.locked'));
-        if (gaps > 0) words.push(t('cell.gap'));
         return (
-          <div
+          <GridCell
             key={column.weekStart}
-            role="gridcell"
-            aria-colindex={at + 2}
-            aria-label={words.join(', ')}
-            aria-selected={at >= selectedFirst && at <= selectedLast}
-            aria-readonly={!isPlan || isLocked}
-            tabIndex={props.tabColumn === at ? 0 : -1}
-            data-row={index}
-            data-column={at}
-            className={classes.join(' ')}
-            style={{ left: lefts[at], width: widths[at] }}
-          >
-            {isEditing ? (
-              <CellField edit={editing} label={words.slice(0, 2).join(', ')} handlers={props.handlers} />
-            ) : (
-              <>
-                <span className={figureClass}>{figure}</span>
-                {marks && (marks.isDueAnotherLook || marks.needsDecision || marks.isOutsideRange) && (
-                  <span className="plan-mark">
-                    {marks.needsDecision ? (
-                      <span className="plan-decision">!</span>
-                    ) : marks.isDueAnotherLook ? (
-                      <RingMark />
-                    ) : (
-                      <ForkMark />
-                    )}
-                  </span>
-                )}
-              </>
-            )}
-          </div>
+            row={index}
+            column={at}
+            left={lefts[at] ?? 0}
+            width={widths[at] ?? 0}
+            name={name}
+            value={row.getValue<number | null>(column.weekStart)}
+            isPlan={isPlan}
+            isBeforeSeam={column.isBeforeSeam}
+            marks={isPlan ? figures.marks[column.index] : undefined}
+            isLocked={isPlan && lockedAt[column.index] === true}
+            hasGap={!isPlan && (figures.gaps[column.index] ?? 0) > 0}
+            isSelected={at >= selectedFirst && at <= selectedLast}
+            isActive={props.activeColumn === at}
+            isTabStop={props.tabColumn === at}
+            editing={editing?.column === at ? editing : null}
+            handlers={props.handlers}
+            words={props.words}
+          />
         );
       })}
+    </div>
+  );
+});
+
+interface GridCellProps {
+  row: number;
+  column: number;
+  left: number;
+  width: number;
+  name: string;
+  value: number | null;
+  isPlan: boolean;
+  isBeforeSeam: boolean;
+  marks: CellMarks | undefined;
+  isLocked: boolean;
+  hasGap: boolean;
+  isSelected: boolean;
+  isActive: boolean;
+  isTabStop: boolean;
+  editing: EditState | null;
+  handlers: RowHandlers;
+  words: CellWords;
+}
+
+const GridCell = memo(function GridCell(props: GridCellProps) {
+  const { column, value, isPlan, isLocked, hasGap, marks, words, editing } = props;
+  const week = words.weeks[column] ?? '';
+  const figure = value === null ? '–' : formatNumber(value);
+  let classes = isPlan ? 'plan-cell is-plan' : 'plan-cell';
+  if (isLocked) classes += ' is-locked';
+  if (props.isActive) classes += ' is-active';
+  if (props.isBeforeSeam) classes += ' is-before-seam';
+  let label = `${props.name}, ${week}, ${value === null ? words.unknown : `${isPlan ? words.plan : words.sold} ${figure}`}`;
+  let figureClass: string | undefined;
+  if (hasGap) {
+    figureClass = 'gap-figure';
+    label += `, ${words.gap}`;
+  }
+  if (marks) {
+    if (marks.overridden !== null) {
+      figureClass = marks.overridden === 'own' ? 'over' : 'over-through';
+      label += `, ${words[marks.overridden]}`;
+    }
+    if (marks.isDueAnotherLook) label += `, ${words.look}`;
+    if (marks.needsDecision) label += `, ${words.decision}`;
+    if (marks.isOutsideRange) label += `, ${words.outside}`;
+    if (marks.isPending) {
+      classes += ' is-pending';
+      label += `, ${words.pending}`;
+    }
+  }
+  if (isLocked) label += `, ${words.locked}`;
+  return (
+    <div
+      role="gridcell"
+      aria-colindex={column + 2}
+      aria-label={label}
+      aria-selected={props.isSelected}
+      aria-readonly={!isPlan || isLocked}
+      tabIndex={props.isTabStop ? 0 : -1}
+      data-row={props.row}
+      data-column={column}
+      className={classes}
+      style={{ left: props.left, width: props.width }}
+    >
+      {editing ? (
+        <CellField edit={editing} label={`${props.name}, ${week}`} handlers={props.handlers} />
+      ) : (
+        <>
+          {figureClass === undefined ? figure : <span className={figureClass}>{figure}</span>}
+          {marks?.needsDecision ? (
+            <span className="plan-mark">
+              <span className="plan-decision">!</span>
+            </span>
+          ) : marks?.isDueAnotherLook ? (
+            <span className="plan-mark">
+              <RingMark />
+            </span>
+          ) : marks?.isOutsideRange ? (
+            <span className="plan-mark">
+              <ForkMark />
+            </span>
+          ) : null}
+        </>
+      )}
     </div>
   );
 });

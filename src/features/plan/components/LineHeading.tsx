@@ -15,7 +15,7 @@ export function LineHeading({ plan, hasEdits }: { plan: LinePlan; hasEdits: bool
   const step = (kind: HandOverKind, variant: 'solid' | 'quiet' | 'text') => (
     <Button
       variant={variant}
-      className={variant === 'text' ? '' : 'relative z-1'}
+      className={variant === 'text' ? 'h-8' : 'relative z-1'}
       disabled={hasEdits}
       title={title}
       onClick={() => setOpen(kind)}

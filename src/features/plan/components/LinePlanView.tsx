@@ -18,7 +18,14 @@ import { useSession } from '../../../lib/session.ts';
 import { buildColumns, defaultWindow, type GridColumn } from '../grid-columns.ts';
 import { buildRows, rowModes, type GridRow, type RowMode } from '../grid-rows.ts';
 import type { GridViewRow } from '../grid-table.ts';
-import { asVersion, computeFigures, computeRow, planWeekStarts, rowOfVersion } from '../line-figures.ts';
+import {
+  asVersion,
+  computeFigures,
+  computeHistory,
+  computeRow,
+  planWeekStarts,
+  rowOfVersion,
+} from '../line-figures.ts';
 import { measureLargestChange, countCells } from '../edit-size.ts';
 import { decimalMarkOf, readFactor, readTypedNumber } from '../number-input.ts';
 import type { PageState } from '../page-state.ts';
@@ -31,7 +38,14 @@ import {
   type PendingEdit,
   type SettledCell,
 } from '../pending-edits.ts';
-import { readConflicts, useRefreshLine, useSaveOverrides, versionsQuery, versionStateQuery } from '../queries.ts';
+import {
+  readConflicts,
+  reasonsQuery,
+  useRefreshLine,
+  useSaveOverrides,
+  versionsQuery,
+  versionStateQuery,
+} from '../queries.ts';
 import { computeSelection } from '../selection-figures.ts';
 import { keepInside, rectangleOf, rowsThatCount, type Selection } from '../selection.ts';
 import { useLineEdits } from '../use-line-edits.ts';
@@ -82,6 +96,7 @@ export function LinePlanView({
   const [isSaveOpen, setSaveOpen] = useState(false);
   const [choice, setChoice] = useState<SaveChoice | null>(null);
   const [conflicts, setConflicts] = useState<CellConflict[] | null>(null);
+  const reasons = useQuery({ ...reasonsQuery, enabled: conflicts !== null }).data?.reasons;
   const [reading, setReading] = useState<Extract<PasteReading, { kind: 'two-ways' }> | null>(null);
   const save = useSaveOverrides(lineId);
   const refreshLine = useRefreshLine(lineId);
@@ -131,7 +146,11 @@ export function LinePlanView({
   );
   const locationId = plan.locations.some(({ id }) => id === page.locationId) ? page.locationId : null;
   const rows = useMemo(() => buildRows(plan, page.down, locationId), [plan, page.down, locationId]);
-  const rowFigures = useMemo(() => rows.map((row) => computeRow(plan, figures, row)), [plan, figures, rows]);
+  const histories = useMemo(() => rows.map((row) => computeHistory(plan, row)), [plan, rows]);
+  const rowFigures = useMemo(
+    () => rows.map((row, index) => computeRow(plan, figures, row, histories[index] ?? computeHistory(plan, row))),
+    [plan, figures, rows, histories],
+  );
   const nameOf = useCallback(
     (row: GridRow) => {
       if (row.kind !== 'total') return row.detail === null ? row.label : `${row.label}, ${row.detail}`;
@@ -156,24 +175,28 @@ export function LinePlanView({
   const viewRows = useMemo<GridViewRow[]>(() => {
     const locked = new Set(plan.lockedWeeks);
     const lockedAt = planWeekStarts(plan).map((week) => locked.has(week));
-    return rows.map((row, index) => ({
-      key: row.key,
-      name: nameOf(row),
-      heading:
-        row.kind === 'series' && plan.locations.length > 1 ? (
-          <>
-            {row.label} <span className="text-soft">{row.detail}</span>
-          </>
-        ) : row.kind === 'total' ? (
-          nameOf(row)
-        ) : (
-          row.label
-        ),
-      isTotal: row.kind === 'total',
-      figures: rowFigures[index] ?? computeRow(plan, figures, row),
-      lockedAt,
-    }));
-  }, [rows, rowFigures, plan, nameOf, figures]);
+    return rows.flatMap((row, index) => {
+      const ofRow = rowFigures[index];
+      if (!ofRow) return [];
+      return {
+        key: row.key,
+        name: nameOf(row),
+        heading:
+          row.kind === 'series' && plan.locations.length > 1 ? (
+            <>
+              {row.label} <span className="text-soft">{row.detail}</span>
+            </>
+          ) : row.kind === 'total' ? (
+            nameOf(row)
+          ) : (
+            row.label
+          ),
+        isTotal: row.kind === 'total',
+        figures: ofRow,
+        lockedAt,
+      };
+    });
+  }, [rows, rowFigures, plan, nameOf]);
   const nameWidth = useMemo(() => {
     const longest = viewRows.reduce((most, { name }) => Math.max(most, name.length), 8);
     return Math.min(260, Math.max(132, Math.round(longest * 6.7) + 14));
@@ -286,8 +309,8 @@ export function LinePlanView({
       { scope: gridRow.scope, firstWeek: week.weekStart, lastWeek: week.weekStart, operation: 'set to', value },
     ];
     if (!take(step)) return false;
-    const result = computeRow(plan, computeFigures(plan, compactEdits([...edits.done, step])), gridRow);
-    const became = result.plan[week.index];
+    const tried = computeFigures(plan, compactEdits([...edits.done, step]));
+    const became = computeRow(plan, tried, gridRow, { history: [], gaps: [] }).plan[week.index];
     if (became !== undefined && Math.abs(became - value) > 1e-9) {
       tell(t('edits.rounded', { value: formatNumber(value, 6), became: formatNumber(became, 6) }));
     }
@@ -766,7 +789,7 @@ export function LinePlanView({
           otherChanges={Math.max(0, changes - conflicts.length)}
           own={{
             author: person.name,
-            reason: null,
+            reason: reasons?.find(({ id }) => id === choice?.reasonId)?.name ?? null,
             note: choice?.note ?? null,
             describe: howOwn,
           }}

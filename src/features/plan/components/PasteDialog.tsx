@@ -47,6 +47,7 @@ export function PasteDialog({
                 type="radio"
                 name="reading"
                 className="accent-moss"
+                autoFocus={each === ownMark}
                 checked={mark === each}
                 onChange={() => setMark(each)}
               />

@@ -86,23 +86,26 @@ export function PlanGrid(props: PlanGridProps) {
   );
   const tabStop = selection?.active ?? { row: 0, column: firstPlanned };
 
-  const widths = useMemo(() => {
-    const total = rows.at(-1);
-    return columns.map((column) => {
-      let longest = '';
-      const isHistory = column.kind === 'history';
-      const consider = (row: GridViewRow) => {
-        const value = isHistory ? row.figures.history[column.index] : row.figures.plan[column.index];
-        if (value === null || value === undefined) return;
-        const text = formatNumber(value);
-        if (text.length > longest.length) longest = text;
-      };
-      if (total) consider(total);
-      const step = Math.max(1, Math.floor(rows.length / 200));
-      for (let index = 0; index < rows.length; index += step) consider(rows[index] as GridViewRow);
-      return columnWidth(longest) + (column.isBeforeSeam ? seamGap : 0);
-    });
-  }, [rows, columns]);
+  const widths = useMemo(
+    () =>
+      columns.map((column) => {
+        const isHistory = column.kind === 'history';
+        let largest = 0;
+        let longest = '';
+        for (const { figures } of rows) {
+          const value = isHistory ? figures.history[column.index] : figures.plan[column.index];
+          if (!value) continue;
+          if (value > largest) largest = value;
+          if (!Number.isInteger(value)) {
+            const text = formatNumber(value);
+            if (text.length > longest.length) longest = text;
+          }
+        }
+        const whole = formatNumber(Math.floor(largest));
+        return columnWidth(whole.length > longest.length ? whole : longest) + (column.isBeforeSeam ? seamGap : 0);
+      }),
+    [rows, columns],
+  );
 
   const tableColumns = useMemo(() => buildTableColumns(columns, widths), [columns, widths]);
   const table = useTable({ features: gridFeatures, columns: tableColumns, data: rows, getRowId: (row) => row.key });
@@ -165,7 +168,8 @@ export function PlanGrid(props: PlanGridProps) {
   const activeRow = selection?.active.row;
   const activeColumn = selection?.active.column;
   useLayoutEffect(() => {
-    if (headRow === undefined || headColumn === undefined || !isFocusWanted.current) return;
+    // A click has its cell in sight already; scrolling under the mouse would drag the selection along.
+    if (headRow === undefined || headColumn === undefined || !isFocusWanted.current || isDragging.current) return;
     if (headRow < totalRow) rowVirtualizer.scrollToIndex(headRow, { align: 'auto' });
     columnVirtualizer.scrollToIndex(headColumn, { align: 'auto' });
   }, [headRow, headColumn, totalRow, rowVirtualizer, columnVirtualizer]);
@@ -324,7 +328,7 @@ export function PlanGrid(props: PlanGridProps) {
   }
 
   function onMouseOver(event: MouseEvent<HTMLDivElement>) {
-    if (!isDragging.current || !selection) return;
+    if (!isDragging.current || !selection || event.buttons !== 1) return;
     const cell = cellAt(event.target);
     if (cell && (cell.row !== headRow || cell.column !== headColumn)) select({ active: selection.active, head: cell });
   }
@@ -357,6 +361,26 @@ export function PlanGrid(props: PlanGridProps) {
     }
   }
 
+  const words = useMemo(
+    () => ({
+      weeks: columns.map(({ fullLabel }) =>
+        t('cell.week', { week: Number(fullLabel.slice(-2)), year: fullLabel.slice(0, 4) }),
+      ),
+      plan: t('cell.plan'),
+      sold: t('cell.sold'),
+      unknown: t('cell.unknown'),
+      own: t('cell.overridden'),
+      through: t('cell.through'),
+      look: t('cell.look'),
+      decision: t('cell.decision'),
+      outside: t('cell.outside'),
+      pending: t('cell.pending'),
+      locked: t('cell.locked'),
+      gap: t('cell.gap'),
+    }),
+    [columns, t],
+  );
+
   const rowProps = (index: number) => {
     const isSelected = rectangle !== null && index >= rectangle.firstRow && index <= rectangle.lastRow;
     return {
@@ -372,6 +396,7 @@ export function PlanGrid(props: PlanGridProps) {
       tabColumn: tabStop.row === index ? tabStop.column : -1,
       editing: editing?.row === index ? editing : null,
       handlers,
+      words,
     };
   };
   const total = tableRows[totalRow];

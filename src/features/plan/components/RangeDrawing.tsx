@@ -81,7 +81,7 @@ export function RangeDrawing({ low95, low80, high80, high95, model, plan, lastYe
         {t('why.range80', { low: figure(low80), high: figure(high80) })}
       </text>
       <rect x="157.5" y="55.5" width="8" height="8" fill="var(--sky-tint)" stroke="var(--sky-mid)" />
-      <text x={width} y="64" fontSize="11" fill="var(--soft)" textAnchor="end">
+      <text x="171" y="64" fontSize="11" fill="var(--soft)">
         {t('why.range95', { low: figure(low95), high: figure(high95) })}
       </text>
     </svg>

@@ -70,7 +70,10 @@ export function ReviewStrip({
       </summary>
       <div className="mt-1 grid gap-x-10 gap-y-2 min-[1100px]:grid-cols-[minmax(0,1.3fr)_minmax(0,1fr)]">
         <div className="min-w-0 overflow-x-auto">
-          <Table caption={t('review.byWeek')} className="text-small [&_td]:!py-0.5 [&_td]:!pr-3 [&_th]:!py-0.5">
+          <Table
+            caption={t('review.byWeek')}
+            className="text-small [&_td]:!py-0.5 [&_td]:!pr-2 [&_th]:!py-0.5 [&_th]:!pr-2"
+          >
             <thead>
               <tr>
                 <th scope="col">{t('review.units')}</th>

@@ -42,7 +42,7 @@ export function VersionsPanel({
                   <li
                     key={version.number}
                     aria-current={isShown || undefined}
-                    className={`grid grid-cols-[34px_1fr_auto] gap-x-2 border-t border-line py-1.5 text-small ${
+                    className={`-mx-2 grid grid-cols-[30px_1fr_auto] gap-x-2 border-t border-line px-2 py-1.5 text-small ${
                       isShown ? 'bg-moss-tint' : ''
                     }`}
                   >
