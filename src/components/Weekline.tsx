@@ -1,7 +1,7 @@
 import { type ReactNode, useLayoutEffect, useMemo, useRef, useState } from 'react';
 import { useTranslation } from 'react-i18next';
 import type { Weekline as WeeklineContract } from '../../shared/contracts/plan.ts';
-import { addDays, shortWeekLabel, weekLabel } from '../../shared/domain/weeks.ts';
+import { addDays, shortWeekLabel, weekLabel, weeksBetween } from '../../shared/domain/weeks.ts';
 import { formatLongDate, formatMonthLetter, formatUnits } from '../lib/format.ts';
 import { Dialog } from './Dialog.tsx';
 import { Table } from './Table.tsx';
@@ -237,8 +237,9 @@ function Band({ weeks, soldWeeks, width, range, onRangeChange, caption }: BandPr
     width,
     onMove: onRangeChange && ((positions: [number, number]) => onRangeChange(toRange(positions, firstWeek))),
   });
-  const words = caption ?? t('weekline.shown', { count: last - first + 1 });
-  const middle = (windowLeft + windowRight) / 2;
+  const words = caption ?? t('weekline.shown', { count: weeksBetween(range.firstWeek, range.lastWeek) + 1 });
+  const isFlipped = windowRight + handleWidth > width;
+  const middle = (windowLeft + windowRight - (isFlipped ? handleWidth + 7 : 0)) / 2;
   const hasRoomForMonths = windowRight - windowLeft > 480;
   const hidden: Span[] = !onRangeChange
     ? []
@@ -246,10 +247,10 @@ function Band({ weeks, soldWeeks, width, range, onRangeChange, caption }: BandPr
       ? [
           [windowLeft - handleWidth - 4, windowLeft + 8],
           [middle - 4 * words.length - 16, middle + 4 * words.length + 16],
-          [windowRight - (windowRight + handleWidth > width ? handleWidth + 4 : 8), windowRight + handleWidth + 4],
+          [windowRight - (isFlipped ? handleWidth + 11 : 8), windowRight + handleWidth + 4],
         ]
       : [[windowLeft - handleWidth - 4, windowRight + handleWidth + 4]];
-  const hasRoomInside = windowRight - windowLeft > 7 * words.length;
+  const hasRoomInside = windowRight - windowLeft - (isFlipped ? handleWidth + 7 : 0) > 7 * words.length;
 
   return (
     <svg
@@ -332,7 +333,7 @@ function Band({ weeks, soldWeeks, width, range, onRangeChange, caption }: BandPr
               side="last"
               foot={foot}
               label={shortWeekLabel(range.lastWeek)}
-              flip={windowRight + handleWidth > width}
+              flip={isFlipped}
             />
           </Slider>
         </>
@@ -456,7 +457,8 @@ function Pennants({
   return findRuns(weeks.length, (position) => weeks[position]?.isPromoted ?? false).map(([from, to]) => {
     const isInside = to >= first && from <= last;
     const x = xOf(from);
-    const length = Math.max(9, Math.min(36, xOf(to + 1) - x));
+    const end = xOf(to + 1);
+    const length = Math.max(9, Math.min(36, end - x));
     return (
       <g key={from} aria-hidden="true">
         <path
@@ -467,6 +469,7 @@ function Pennants({
           strokeLinejoin="round"
         />
         <path d={`M${x} 21V36`} stroke="var(--turmeric)" strokeWidth="1.2" />
+        {end > x + length && <path d={`M${x} 34.2H${end - 1}`} stroke="var(--turmeric)" strokeWidth="1.2" />}
       </g>
     );
   });
@@ -498,10 +501,11 @@ function Months({
     marks.push({ x, text: isYear ? day.slice(0, 4) : formatMonthLetter(day), isYear });
     room = x + (isYear ? 40 : 18);
   });
+  const rim = xOf(weeks.length) + edge;
   return marks.map(({ x, text, isYear }) => (
     <g key={`${x}-${text}`} aria-hidden="true" pointerEvents="none">
       {isYear && x > xOf(0) && <path d={`M${x + 0.5} 40V${foot}`} stroke="var(--rule)" strokeDasharray="1 3" />}
-      {hidden.every(([from, to]) => x + (isYear ? 32 : 10) < from || x > to) && (
+      {x + (isYear ? 34 : 12) <= rim && hidden.every(([from, to]) => x + (isYear ? 32 : 10) < from || x > to) && (
         <text
           x={x + (isYear ? 2 : 0)}
           y={foot + 17}

@@ -46,6 +46,11 @@ export const commonTexts = {
       comparingRows: 'Comparing {{rows, number}} rows with what is held',
       mergingRows: 'Putting {{rows, number}} rows in force',
       withdrawing: 'Bringing back what was there before',
+      pack: {
+        gathering: 'Gathering the locked weeks of {{lines}} lines',
+        writing: 'Writing the workbook',
+        storing: 'Keeping it with its checksum',
+      },
       forecastReading: 'Reading sales and calendar',
       forecastLines: '{{done}} of {{total}} lines forecast',
     },

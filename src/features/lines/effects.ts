@@ -37,9 +37,14 @@ const spoken: Readonly<Record<string, { sentence: string; move: number }>> = {
 
 const holidayPattern = /^(.*): week (before|of|after)$/;
 
-/** Coefficients in ln units, turned into factors of the units for a move that people know; season as one effect, highest against lowest month. */
+/**
+ * Coefficients in ln units, turned into factors of the units for a move that people know; season as one effect, highest against lowest
+ * month. One that was taken as none (0 without error: its sign couldn't be) is left out.
+ */
 export function listEffects(coefficients: readonly Coefficient[]): Effect[] {
-  const effects = coefficients.filter(({ group }) => group !== 'season').map(toEffect);
+  const effects = coefficients
+    .filter(({ group, estimate, standardError }) => group !== 'season' && (estimate !== 0 || standardError !== 0))
+    .map(toEffect);
   const season = readSeason(coefficients);
   return season ? [...effects, season] : effects;
 }

@@ -116,7 +116,7 @@ export function CalendarGrid({ view, seamAfter, chosen, onChoose }: GridProps) {
                       </button>
                     )}
                   </th>
-                  <td colSpan={view.weeks} className="p-0 align-top">
+                  <td colSpan={view.weeks} className="h-px p-0 align-top">
                     <Track
                       view={view}
                       bars={layBars(
@@ -138,7 +138,7 @@ export function CalendarGrid({ view, seamAfter, chosen, onChoose }: GridProps) {
                       <th scope="row" className="py-1 pr-2 pl-3 text-left align-top font-normal text-soft">
                         {item.name}
                       </th>
-                      <td colSpan={view.weeks} className="p-0 align-top">
+                      <td colSpan={view.weeks} className="h-px p-0 align-top">
                         <Track
                           view={view}
                           bars={layBars(view, [item.id])}
@@ -187,7 +187,7 @@ function Track({
     t('priceFrom', { price: formatMoney(price, currency), week: weekLabel(addWeeks(view.firstWeek, position)) }),
   );
   return (
-    <div className="relative bg-sheet" style={{ height: Math.max(32, height) }}>
+    <div className="relative h-full bg-sheet" style={{ minHeight: Math.max(32, height) }}>
       {Array.from({ length: view.weeks }, (_, position) => (
         <span
           key={position}

@@ -20,11 +20,11 @@ export function PromotionPanel({
 }) {
   const { t } = useTranslation('calendar');
   if (!promotion) {
-    return (
+    return view.promotions.length > 0 ? (
       <aside className="border-l border-line pl-6 text-soft">
-        {view.promotions.length > 0 && <p className="pt-1">{t('panel.hint')}</p>}
+        <p className="pt-1">{t('panel.hint')}</p>
       </aside>
-    );
+    ) : null;
   }
   const names = new Map(view.lines.flatMap(({ items }) => items.map(({ id, name }) => [id, name] as const)));
   const locations = new Map(view.locations.map(({ id, name }) => [id, name]));

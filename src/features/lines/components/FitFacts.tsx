@@ -13,8 +13,10 @@ export function FitFacts({ fit }: { fit: NonNullable<LineFitView['fit']> }) {
     [t('facts.explained'), formatPercent(fit.rSquared)],
     [t('facts.sigma'), t('facts.sigmaValue', { share: formatPercent(Math.exp(fit.sigma) - 1, 0) })],
     [t('facts.aic'), formatUnits(fit.aic, 1)],
-    [t('facts.seconds'), t('facts.secondsValue', { seconds: formatUnits(fit.seconds, 1) })],
   ];
+  if (fit.seconds > 0) {
+    facts.push([t('facts.seconds'), t('facts.secondsValue', { seconds: formatUnits(fit.seconds, 1) })]);
+  }
   if (typeof name === 'string') facts.push([t('facts.specification'), name]);
   return (
     <>

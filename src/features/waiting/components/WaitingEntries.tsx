@@ -6,6 +6,7 @@ import { EmptyState } from '../../../components/states.tsx';
 import { withCategory } from '../../../lib/categories.ts';
 import { formatInstant, formatMoney } from '../../../lib/format.ts';
 import { useCurrency } from '../../../lib/settings.ts';
+import { wordDetail } from '../wording.ts';
 
 export function WaitingEntries({ entries }: { entries: WaitingEntry[] }) {
   const { t } = useTranslation('waiting');
@@ -41,15 +42,23 @@ export function WaitingEntries({ entries }: { entries: WaitingEntry[] }) {
 function Row({ entry, position }: { entry: WaitingEntry; position: number }) {
   const { t } = useTranslation('waiting');
   const currency = useCurrency();
-  const names = { subject: entry.subject, category: entry.categoryName ?? '', count: entry.count };
+  const names = {
+    subject: entry.subject,
+    category: entry.categoryName ?? '',
+    count: entry.count,
+    detail: entry.detail ?? '',
+  };
+  const detail = wordDetail(entry);
   const [day, clock] = entry.at === null ? [null, null] : splitInstant(formatInstant(entry.at));
   return (
     <tr className="border-b border-line align-top">
       <td className="w-10 py-3 font-display text-[24px]/6 font-[560] [font-stretch:85%]">{position}</td>
       <th scope="row" className="py-3 text-left font-normal">
         <span className="block text-lead font-semibold">{t(`entry.${entry.kind}.title`, names)}</span>
-        {entry.detail !== null && (
-          <span className="mt-0.5 block max-w-[460px] text-body/[18px] text-soft">{entry.detail}</span>
+        {detail !== null && (
+          <span className={`mt-0.5 block max-w-[460px] text-body/[18px] text-soft ${detail.isQuoted ? 'italic' : ''}`}>
+            {t(detail.key, detail.values)}
+          </span>
         )}
       </th>
       <td className="num w-[104px] py-3">
