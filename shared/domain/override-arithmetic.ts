@@ -77,8 +77,9 @@ function keysOfHolders({ itemId, locationId }: Scope): string[] {
 }
 
 /**
- * Overrides by week of the plan, in order, without the clears and what they cleared: a clear removes earlier overrides of the same or a finer
- * scope in its weeks, as if they had never been made.
+ * Overrides by week of the plan, in order, as far as they matter. Left out are clears and what they cleared: a clear removes earlier overrides of the same
+ * or a finer scope in its weeks, as if they had never been made. So is a series' override that a later *set to* of the same series makes void, with no
+ * total between them that its value could have entered.
  */
 export function overridesByWeek<Override extends ReplayedOverride>(
   overrides: readonly Override[],
@@ -91,17 +92,28 @@ export function overridesByWeek<Override extends ReplayedOverride>(
     const last = Math.min(planWeeks - 1, weeksBetween(planFirstWeek, override.lastWeek));
     for (let week = first; week <= last; week++) byWeek[week]!.push(override);
   }
-  return byWeek.map((ofWeek) => {
-    if (!ofWeek.some(({ operation }) => operation === 'clear')) return ofWeek;
-    const cleared = new Set<string>();
-    const kept: Override[] = [];
-    for (let i = ofWeek.length - 1; i >= 0; i--) {
-      const override = ofWeek[i]!;
-      if (override.operation === 'clear') cleared.add(scopeKey(override.scope));
-      else if (!keysOfHolders(override.scope).some((key) => cleared.has(key))) kept.push(override);
+  return byWeek.map(leaveOutVoid);
+}
+
+function leaveOutVoid<Override extends ReplayedOverride>(ofWeek: readonly Override[]): Override[] {
+  const cleared = new Set<string>();
+  const setLater = new Set<string>();
+  const kept: Override[] = [];
+  for (let i = ofWeek.length - 1; i >= 0; i--) {
+    const override = ofWeek[i]!;
+    const { scope, operation } = override;
+    const key = scopeKey(scope);
+    if (operation === 'clear') {
+      cleared.add(key);
+      continue;
     }
-    return kept.reverse();
-  });
+    if (cleared.size > 0 && keysOfHolders(scope).some((holder) => cleared.has(holder))) continue;
+    if (scope.itemId === null || scope.locationId === null) setLater.clear();
+    else if (setLater.has(key)) continue;
+    else if (operation === 'set to') setLater.add(key);
+    kept.push(override);
+  }
+  return kept.reverse();
 }
 
 const setOnSeries = 1;

@@ -9,8 +9,21 @@ const MS_PER_DAY = 86_400_000;
 /** 0 = Sunday … 6 = Saturday. */
 export type Weekday = 0 | 1 | 2 | 3 | 4 | 5 | 6;
 
+/** Plans ask for the same few hundred dates over and over: parsing and checking each time took a fifth of a save over 20,000 overrides. */
+const knownDayNumbers = new Map<string, number>();
+const mostKnownDayNumbers = 20_000;
+
 /** Days since 1970-01-01 of an ISO date. Throws RangeError if the text isn't a real date. */
 export function toDayNumber(date: string): number {
+  const known = knownDayNumbers.get(date);
+  if (known !== undefined) return known;
+  const dayNumber = parseDate(date);
+  if (knownDayNumbers.size >= mostKnownDayNumbers) knownDayNumbers.clear();
+  knownDayNumbers.set(date, dayNumber);
+  return dayNumber;
+}
+
+function parseDate(date: string): number {
   const match = /^(\d{4})-(\d{2})-(\d{2})$/.exec(date);
   if (match) {
     const milliseconds = Date.UTC(Number(match[1]), Number(match[2]) - 1, Number(match[3]));

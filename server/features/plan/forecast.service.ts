@@ -1,7 +1,7 @@
 import type { Job } from '../../../shared/contracts/jobs.ts';
 import { scopeKey } from '../../../shared/domain/override-arithmetic.ts';
 import { addDays, addWeeks, listWeeks, weeksBetween } from '../../../shared/domain/weeks.ts';
-import type { LineForecast, LineInput } from '../../forecasting/types.ts';
+import type { Finding, LineForecast, LineInput } from '../../forecasting/types.ts';
 import { roundToSteps } from '../../forecasting/round-to-steps.ts';
 import { writeAudit } from '../../lib/audit.ts';
 import { demandRight, scopeOf, type Actor } from '../../lib/authorise.ts';
@@ -375,8 +375,12 @@ function describeFit({ fit, findings }: LineForecast): NewFit {
     factorR,
     scores,
     summary: { rows, rank, sigma, rSquared, aic, seconds },
-    findings: [...fit.findings, ...findings],
+    findings: withoutRepeats([...fit.findings, ...findings]),
   };
+}
+
+function withoutRepeats(findings: readonly Finding[]): Finding[] {
+  return [...new Map(findings.map((finding) => [JSON.stringify(finding), finding])).values()];
 }
 
 function groupByLine<Row extends { lineId: number }>(rows: readonly Row[]): Map<number, Row[]> {

@@ -8,7 +8,7 @@ import {
   type Replay,
   type Scope,
 } from '../../../shared/domain/override-arithmetic.ts';
-import { addWeeks, listWeeks, weeksBetween } from '../../../shared/domain/weeks.ts';
+import { listWeeks, weeksBetween } from '../../../shared/domain/weeks.ts';
 import type { StoredOverride, StoredSeries } from './plan.repository.ts';
 
 /** The weeks of a plan. */
@@ -98,7 +98,7 @@ export function comparePlans(
 }
 
 /**
- * Overrides in force, for the grid: those that aren't cleared in every week of the window, and the clears that still matter for one of them.
+ * Overrides in force, for the grid: those that aren't cleared or made void in every week of the window, and the clears that still matter for one of them.
  * An override is due another look where, over the weeks in which nothing of the same scope was set after it, its model has moved by more than
  * `lookThreshold` of what it was; it needs a decision where it can't be met in such a week.
  */
@@ -112,6 +112,7 @@ export function describeOverrides(state: {
 }): OverrideInForce[] {
   const { window, series, overrides, lookThreshold } = state;
   const locked = new Set(state.lockedWeeks);
+  const weekStarts = listWeeks(window.firstWeek, window.weeks);
   const modelOf = createScopeSums(
     series,
     series.map(({ model }) => model),
@@ -120,7 +121,7 @@ export function describeOverrides(state: {
   const kept = new Set<number>();
   const openWeeks = new Map<number, number[]>();
   overridesByWeek(overrides, window.firstWeek, window.weeks).forEach((ofWeek, week) => {
-    const isLocked = locked.has(addWeeks(window.firstWeek, week));
+    const isLocked = locked.has(weekStarts[week]!);
     const setLater = new Set<string>();
     for (let i = ofWeek.length - 1; i >= 0; i--) {
       const { id, scope, operation } = ofWeek[i]!;
@@ -138,24 +139,33 @@ export function describeOverrides(state: {
     const week = weeksBetween(window.firstWeek, weekStart);
     if (reason !== 'locked' && openWeeks.get(id)?.includes(week) === true) unmet.set(id, reason);
   }
-  const inForce = overrides.filter(({ id }) => kept.has(id));
-  const isNeeded = (clear: StoredOverride): boolean =>
-    inForce.some(
-      (other) =>
-        other.sequence < clear.sequence &&
-        scopeHolds(clear.scope, other.scope) &&
-        other.firstWeek <= clear.lastWeek &&
-        clear.firstWeek <= other.lastWeek,
+  const inForce = new Map<string, StoredOverride[]>();
+  for (const override of overrides) {
+    if (!kept.has(override.id)) continue;
+    const ofScope = inForce.get(scopeKey(override.scope));
+    if (ofScope) ofScope.push(override);
+    else inForce.set(scopeKey(override.scope), [override]);
+  }
+  const isNeeded = (clear: StoredOverride): boolean => {
+    const isSeries = clear.scope.itemId !== null && clear.scope.locationId !== null;
+    const held = isSeries
+      ? (inForce.get(scopeKey(clear.scope)) ?? [])
+      : [...inForce.values()].flatMap((ofScope) => (scopeHolds(clear.scope, ofScope[0]!.scope) ? ofScope : []));
+    return held.some(
+      ({ sequence, firstWeek, lastWeek }) =>
+        sequence < clear.sequence && firstWeek <= clear.lastWeek && clear.firstWeek <= lastWeek,
     );
+  };
   return overrides
     .filter((override) => kept.has(override.id) || (override.operation === 'clear' && isNeeded(override)))
     .map((override): OverrideInForce => {
       const { lineId: _line, authorId: _author, ...shown } = override;
       const model = modelOf(override.scope);
+      const firstPosition = weeksBetween(window.firstWeek, override.firstWeek);
       let base = 0;
       let moved = 0;
       for (const week of openWeeks.get(override.id) ?? []) {
-        const was = override.baseModel[weeksBetween(override.firstWeek, addWeeks(window.firstWeek, week))] ?? 0;
+        const was = override.baseModel[week - firstPosition] ?? 0;
         base += was;
         moved += Math.abs((model[week] ?? 0) - was);
       }

@@ -5,11 +5,14 @@ import type { ReplayedOverride } from '../../../shared/domain/override-arithmeti
 import { selectRow, selectRows, type Tx } from '../../lib/database.ts';
 import type { LineHead, LockedWeek, RunHead } from './line-state.ts';
 
-/** Takes the line's row, so that saves, hand-overs, locks and forecasts of a line come one after another. False if it is out of scope. */
+/**
+ * Takes the line's row, so that saves, hand-overs, locks and forecasts of a line come one after another; not its key, which imports refer to meanwhile.
+ * False if it is out of scope.
+ */
 export async function lockLine(tx: Tx, lineId: number, categories: number[] | null): Promise<boolean> {
   const row = await selectRow(
     tx,
-    `select id from product_line where id = $lineId and ($categories::int[] is null or category_id = any($categories::int[])) for update`,
+    `select id from product_line where id = $lineId and ($categories::int[] is null or category_id = any($categories::int[])) for no key update`,
     { lineId, categories },
   );
   return row !== null;
@@ -19,7 +22,7 @@ export async function lockLine(tx: Tx, lineId: number, categories: number[] | nu
 export async function lockLinesOfCategory(tx: Tx, categoryId: number): Promise<number[]> {
   const rows = await selectRows<{ id: number }>(
     tx,
-    'select id from product_line where category_id = $categoryId order by id for update',
+    'select id from product_line where category_id = $categoryId order by id for no key update',
     { categoryId },
   );
   return rows.map(({ id }) => id);

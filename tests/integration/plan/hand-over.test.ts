@@ -246,7 +246,7 @@ describe('locks', () => {
        where not exists (select from lock_event u where u.line_id = k.line_id and not u.locked and u.at between k.at and v.at)`,
     );
     expect(rows[0]).toEqual({ writes: 0 });
-  });
+  }, 300_000);
 
   it('hold against a new forecast, shorter and on newer sales', async () => {
     savedOf(await save(world.planner, world.lineId, 1, [override(world, plan, { week: 1, lastWeek: 5, value: 500 })]));

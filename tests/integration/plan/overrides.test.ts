@@ -225,7 +225,7 @@ describe('two people', () => {
     } finally {
       await crowded.close();
     }
-  });
+  }, 300_000);
 });
 
 describe('a save is refused and nothing is written', () => {

@@ -93,7 +93,7 @@ it('rebuilds every version as it was shown, over overrides, locks, unlocks, fore
   }
   const locked = versions.filter(({ isLockedVersion }) => isLockedVersion);
   expect(locked.length).toBe(2);
-}, 120_000);
+}, 300_000);
 
 it('shows versions to nobody outside the category, and none that don’t exist', async () => {
   for (const path of ['versions', 'versions/1']) {
