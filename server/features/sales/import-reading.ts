@@ -147,9 +147,9 @@ function toContractMapping(
       recalled?.yearNumberIs && questions.includes('week-or-month') ? recalled.yearNumberIs : form.yearNumberIs,
     ...(moreSheets.length > 0 ? { moreSheets } : {}),
     valueIncludesVat: recalled?.valueIncludesVat ?? false,
-    categoryId: recalled?.categoryId ?? suggested.categoryId,
-    lineId: recalled?.lineId ?? suggested.lineId,
-    newLineName: recalled?.newLineName ?? null,
+    // Files of different categories often look alike, so where new items belong isn't carried over.
+    ...suggested,
+    newLineName: null,
   };
 }
 
@@ -294,6 +294,7 @@ export async function stageRows(
     await target.append(taken);
     await onProgress(counts.read);
   }
+  resolver.settle();
   for (const [kind, { verdict, count }] of untold) {
     findings.push(toNotice(kind, `${count} more rows of this kind; they aren’t listed one by one.`, verdict));
   }

@@ -78,8 +78,6 @@ export class RangeResolver {
   readonly locations: FileLocation[] = [];
   /** The same item or location went by several texts, so that rows may repeat a key. */
   hasAliases = false;
-  /** What must be chosen before new items can be made; null = nothing. */
-  missingChoice: 'category' | 'line' | null = null;
 
   private readonly choices: ResolverChoices;
   private readonly permitted: ReadonlySet<number> | null;
@@ -98,6 +96,8 @@ export class RangeResolver {
   private readonly locationPositions = new Map<string, number>();
   private readonly unknownCategories = new Map<string, string>();
   private readonly noticedItems = new Set<number>();
+  /** New items whose category the file doesn't tell, with the line it names. */
+  private readonly undecided = new Map<FileItem, string | undefined>();
 
   constructor(range: RangeSnapshot, choices: ResolverChoices) {
     this.choices = choices;
@@ -135,6 +135,23 @@ export class RangeResolver {
     if (typeof location !== 'number') return location;
     this.takeItemName(item, row.itemName);
     return { item, location, notice: this.noticeOtherLine(item, row) };
+  }
+
+  /** To be called after the last row: new items of unknown category go where all known items of the file are, if that is one category. */
+  settle(): void {
+    const known = new Set(this.items.flatMap(({ id, categoryId }) => (id === null ? [] : [categoryId])));
+    const [only] = known;
+    if (known.size !== 1 || only === undefined || only === null) return;
+    for (const [item, line] of this.undecided)
+      Object.assign(item, { categoryId: only }, this.chooseLine({ line }, only));
+    this.undecided.clear();
+  }
+
+  /** What must be chosen before the new items can be made; null = nothing. */
+  get missingChoice(): 'category' | 'line' | null {
+    const fresh = this.items.filter(({ id }) => id === null);
+    if (fresh.some(({ categoryId }) => categoryId === null)) return 'category';
+    return fresh.some(({ lineId, lineName }) => lineId === null && lineName === null) ? 'line' : null;
   }
 
   /** What the file names and nobody knows yet. */
@@ -203,15 +220,9 @@ export class RangeResolver {
       return refuseForeignCategory(row.category === undefined ? 'The chosen category' : `“${row.category}”`);
     }
     const line = this.chooseLine(row, categoryId);
-    if (categoryId === null) this.missingChoice = 'category';
-    else if (line.lineId === null && line.lineName === null) this.missingChoice ??= 'line';
-    return this.place(this.itemPositions, this.items, key, {
-      id: null,
-      code: row.item,
-      name: row.itemName ?? row.item,
-      categoryId,
-      ...line,
-    });
+    const item: FileItem = { id: null, code: row.item, name: row.itemName ?? row.item, categoryId, ...line };
+    if (categoryId === null) this.undecided.set(item, row.line);
+    return this.place(this.itemPositions, this.items, key, item);
   }
 
   /** By the file's category, else by a line name that only one permitted category has, else by the choice made for the file. */
@@ -228,7 +239,10 @@ export class RangeResolver {
     return this.choices.categoryId;
   }
 
-  private chooseLine(row: NamedRow, categoryId: number | null): { lineId: number | null; lineName: string | null } {
+  private chooseLine(
+    row: { line?: string },
+    categoryId: number | null,
+  ): { lineId: number | null; lineName: string | null } {
     if (row.line !== undefined) {
       const known = this.linesByName.get(fold(row.line))?.find((line) => line.categoryId === categoryId);
       return known ? { lineId: known.id, lineName: null } : { lineId: null, lineName: row.line };

@@ -58,7 +58,10 @@ async function readIntoPreview(context: JobContext, stored: StoredImport, folder
     const permitted = permittedCategories(actor, stored.mapping?.kind ?? 'sales');
     const proposal = await proposeReading(table, stored.mapping, {
       fixedFirstWeekday,
-      recall: (fingerprint) => recall(database, actor, fingerprint, permitted),
+      recall: (fingerprint) =>
+        inTransaction(database, (tx) =>
+          imports.recallMapping(tx, fingerprint, { actorId: actor.id, categories: scopeOf(actor, 'see-category') }),
+        ),
       suggested: suggestPlace(range, permitted),
     });
     const { mapping } = proposal;
@@ -299,20 +302,6 @@ async function loadSurroundings(tx: Tx): Promise<{ range: RangeSnapshot; fixedFi
     range: await imports.selectRange(tx),
     fixedFirstWeekday: (await imports.selectFirstWeekday(tx)) as Weekday | null,
   };
-}
-
-/** Remembered only as far as it still leads somewhere the person may import into. */
-async function recall(
-  database: Database,
-  actor: Actor,
-  fingerprint: string,
-  permitted: readonly number[] | null,
-): Promise<ImportMapping | null> {
-  const onlooker = { actorId: actor.id, categories: scopeOf(actor, 'see-category') };
-  const recalled = await inTransaction(database, (tx) => imports.recallMapping(tx, fingerprint, onlooker));
-  if (recalled === null) return null;
-  const isOpen = recalled.categoryId === null || permitted === null || permitted.includes(recalled.categoryId);
-  return isOpen ? recalled : { ...recalled, categoryId: null, lineId: null, newLineName: null };
 }
 
 /** The only category that the person imports for, and its only line. */

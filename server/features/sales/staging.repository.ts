@@ -76,15 +76,15 @@ export async function removeRepeatedKeys(tx: Tx): Promise<{ row: number; code: s
   );
 }
 
-/** Control totals of the rows poured, beside what is held for the same keys. */
+/** Control totals of the rows poured, added up in decimals as a spreadsheet shows them, beside what is held for the same keys. */
 export async function totalRows(
   tx: Tx,
 ): Promise<Omit<ImportTotals, 'rowsRead' | 'rowsRefused' | 'rowsRepaired' | 'byWeek'>> {
   const row = await selectRow<Awaited<ReturnType<typeof totalRows>>>(
     tx,
     `select count(*)::int as "rowsTaken", count(distinct r.week_start)::int as weeks, count(distinct r.item_position)::int as items,
-            count(distinct r.location_position)::int as locations, coalesce(sum(r.units), 0) as units,
-            coalesce(sum(coalesce(r.net_value, r.units * r.price)), 0) as "netValue",
+            count(distinct r.location_position)::int as locations, coalesce(sum(r.units::numeric), 0)::float8 as units,
+            coalesce(sum(coalesce(r.net_value, r.units * r.price)::numeric), 0)::float8 as "netValue",
             to_char(min(r.week_start), 'YYYY-MM-DD') as "firstWeek", to_char(max(r.week_start), 'YYYY-MM-DD') as "lastWeek",
             count(w.item_id)::int as "keysHeld",
             count(w.item_id) filter (where (r.units, r.net_value, r.price, r.regular_price, r.feature, r.display, r.gap, r.days_open, r.mechanics)
@@ -102,7 +102,7 @@ export async function totalRows(
 export function totalRowsByWeek(tx: Tx): Promise<ImportTotals['byWeek']> {
   return selectRows(
     tx,
-    `select to_char(r.week_start, 'YYYY-MM-DD') as "weekStart", coalesce(sum(r.units), 0) as units, sum(w.units) as "unitsHeld", count(*)::int as rows
+    `select to_char(r.week_start, 'YYYY-MM-DD') as "weekStart", coalesce(sum(r.units::numeric), 0)::float8 as units, sum(w.units::numeric)::float8 as "unitsHeld", count(*)::int as rows
      from import_row r
      join import_item i on i.position = r.item_position
      join import_location l on l.position = r.location_position

@@ -83,6 +83,22 @@ describe('names in a file', () => {
     expect(withBoth.items[0]).toMatchObject({ lineId: 11, lineName: null });
   });
 
+  it('lead new items without a category to where all known items of the file are, and nowhere if these are in two', () => {
+    const alone = new RangeResolver(range, everywhere);
+    alone.resolve({ item: 'NEW', line: 'black', location: 'N' });
+    alone.resolve({ item: 'C1', location: 'N' });
+    expect(alone.missingChoice).toBe('category');
+    alone.settle();
+    expect(alone.items[0]).toMatchObject({ categoryId: 2, lineId: 21 });
+    expect(alone.missingChoice).toBeNull();
+
+    const mixed = new RangeResolver(range, everywhere);
+    for (const item of ['NEW', 'C1', 'T1']) mixed.resolve({ item, line: 'Other', location: 'N' });
+    mixed.settle();
+    expect(mixed.items[0]).toMatchObject({ categoryId: null });
+    expect(mixed.missingChoice).toBe('category');
+  });
+
   it('that say another line than the item’s own are taken, and told once', () => {
     const resolver = new RangeResolver(range, everywhere);
     const first = resolver.resolve({ item: 'T1', line: 'Black', location: 'N' });
