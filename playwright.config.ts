@@ -17,6 +17,7 @@ export default defineConfig({
     viewport: { width: 1440, height: 900 },
     locale: 'en-GB',
     timezoneId: 'Europe/Berlin',
+    actionTimeout: 20_000,
     screenshot: 'only-on-failure',
     trace: 'retain-on-failure',
     launchOptions: {

@@ -85,7 +85,7 @@ async function writeSalesWithFaults(): Promise<void> {
   sheet.getCell(firstRow + 5, 3).value = null;
   sheet.getCell(firstRow + 7, 10).value = 3;
   sheet.getCell(firstRow + 9, 6).value = ' 1,204 ';
-  sheet.addRow(sheet.getRow(firstRow + 12).values as ExcelJS.CellValue[]);
+  sheet.addRow(sheet.getRow(firstRow + 12).values);
   await workbook.xlsx.writeFile(path.join(folder, `${category.slug}-sales-with-faults.xlsx`));
 }
 

@@ -14,7 +14,7 @@ export interface JobContext {
   jobId: number;
   actor: Actor;
   payload: Record<string, unknown>;
-  report(progress: number, message: NonNullable<Job['message']>): Promise<void>;
+  report: (progress: number, message: NonNullable<Job['message']>) => Promise<void>;
 }
 
 /** Does the work and returns what the job made. A ProblemError it throws is told to the person; it isn't tried again. */
