@@ -24,10 +24,12 @@ export function buildRows(plan: Range, mode: RowMode, locationId: number | null)
     locationId === null || series.locationId === locationId ? [{ ...series, index }] : [],
   );
   const locationNames = new Map(plan.locations.map(({ id, name }) => [id, name]));
+  const byItem = groupBy(kept, ({ itemId }) => itemId);
+  const byLocation = groupBy(kept, (series) => series.locationId);
   const rows: GridRow[] = [];
   if (mode === 'items') {
     for (const item of plan.items) {
-      const seriesIndexes = kept.filter((series) => series.itemId === item.id).map((series) => series.index);
+      const seriesIndexes = (byItem.get(item.id) ?? []).map(({ index }) => index);
       if (seriesIndexes.length === 0) continue;
       rows.push({
         key: `i${item.id}`,
@@ -40,7 +42,7 @@ export function buildRows(plan: Range, mode: RowMode, locationId: number | null)
     }
   } else if (mode === 'locations') {
     for (const location of plan.locations) {
-      const seriesIndexes = kept.filter((series) => series.locationId === location.id).map((series) => series.index);
+      const seriesIndexes = (byLocation.get(location.id) ?? []).map(({ index }) => index);
       if (seriesIndexes.length === 0) continue;
       rows.push({
         key: `l${location.id}`,
@@ -53,11 +55,10 @@ export function buildRows(plan: Range, mode: RowMode, locationId: number | null)
     }
   } else {
     const order = new Map(plan.locations.map(({ id }, position) => [id, position]));
-    const byItem = new Map<number, typeof kept>();
-    for (const series of kept) byItem.set(series.itemId, [...(byItem.get(series.itemId) ?? []), series]);
     for (const item of plan.items) {
-      const ofItem = byItem.get(item.id) ?? [];
-      ofItem.sort((a, b) => (order.get(a.locationId) ?? 0) - (order.get(b.locationId) ?? 0));
+      const ofItem = (byItem.get(item.id) ?? []).toSorted(
+        (a, b) => (order.get(a.locationId) ?? 0) - (order.get(b.locationId) ?? 0),
+      );
       for (const series of ofItem) {
         rows.push({
           key: `i${item.id}l${series.locationId}`,
@@ -79,6 +80,16 @@ export function buildRows(plan: Range, mode: RowMode, locationId: number | null)
     seriesIndexes: kept.map((series) => series.index),
   });
   return rows;
+}
+
+function groupBy<Value>(values: readonly Value[], keyOf: (value: Value) => number): Map<number, Value[]> {
+  const groups = new Map<number, Value[]>();
+  for (const value of values) {
+    const group = groups.get(keyOf(value));
+    if (group) group.push(value);
+    else groups.set(keyOf(value), [value]);
+  }
+  return groups;
 }
 
 /**

@@ -75,9 +75,9 @@ function joinWeeks(weeks: readonly WeekEdit[]): PendingEdit[] {
 }
 
 /**
- * The edits in the fewest overrides that give the same plan: what a later *set to* of the same scope and week, or a *clear* that holds it, makes void is
- * left out, unless another change that meets it lies between; runs of weeks with the same change become one. A *clear* with nothing to clear is left
- * out; `isSaved` tells whether a scope, or one under it, has a saved override in a week.
+ * The edits as they are shown and saved, in the fewest overrides: what a later *set to* of the same scope and week, or a *clear* that holds it, makes
+ * void is left out as if it had never been typed, unless another change that meets it lies between; runs of weeks with the same change become one. A
+ * *clear* with nothing to clear is left out; `isSaved` tells whether a scope, or one under it, has a saved override in a week.
  */
 export function compactEdits(
   steps: readonly (readonly PendingEdit[])[],
