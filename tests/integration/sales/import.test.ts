@@ -6,7 +6,8 @@ import { Problem } from '../../../shared/contracts/problem.ts';
 import { ImportDetail, ImportList } from '../../../shared/contracts/sales.ts';
 import { buildApp } from '../../../server/app.ts';
 import { openTestDeps, signIn, type TestDeps } from '../../factories/deps.ts';
-import { buildImporter } from '../../factories/imports.ts';
+import { buildImporter, importHandlers } from '../../factories/imports.ts';
+import { runQueuedJobs } from '../../factories/jobs.ts';
 import { makePerson } from '../../factories/people.ts';
 import { makeCategory, makeItem, makeLine, makeRange } from '../../factories/range.ts';
 
@@ -540,5 +541,38 @@ describe('a failure at the very end', () => {
     }
     expect((await importer.accept(read.id)).state).toBe('done');
     expect(await inForce(categoryId)).toHaveLength(2);
+  });
+});
+
+describe('the same acceptance twice', () => {
+  it('asked for at once has one effect; the other is told', async () => {
+    const { categoryId, itemCodes } = await makeRange(deps.database, { items: 1 });
+    const { importer, cookie } = await planIn(categoryId);
+    const read = await importer.upload('twice.csv', `week,item,units\n2026-W02,${itemCodes[0]},3\n`);
+    const ask = () =>
+      request(app).post(`/api/imports/${read.id}/accept`).set('cookie', cookie).send({ createUnknown: false });
+    const statuses = (await Promise.all([ask(), ask(), ask()])).map(({ status }) => status).sort();
+    expect(statuses).toEqual([202, 409, 409]);
+    await runQueuedJobs(deps, importHandlers);
+    const { rows } = await deps.database.pool.query(
+      'select count(*)::int as entries, count(distinct revision_id)::int as revisions from sales_entry where import_id = $1',
+      [read.id],
+    );
+    expect(rows).toEqual([{ entries: 1, revisions: 1 }]);
+  });
+
+  it('run again after its worker died without a word changes nothing', async () => {
+    const { categoryId, itemCodes } = await makeRange(deps.database, { items: 1 });
+    const { importer } = await planIn(categoryId);
+    const read = await importer.upload('again.csv', `week,item,units\n2026-W02,${itemCodes[0]},3\n`);
+    const job = await importer.accept(read.id);
+    await deps.database.pool.query(`update job set state = 'queued', ended_at = null where id = $1`, [job.id]);
+    expect(await runQueuedJobs(deps, importHandlers)).toEqual([job.id]);
+    const { rows } = await deps.database.pool.query(
+      'select count(*)::int as entries from sales_entry where import_id = $1',
+      [read.id],
+    );
+    expect(rows).toEqual([{ entries: 1 }]);
+    expect((await importer.read(read.id)).state).toBe('accepted');
   });
 });
