@@ -77,9 +77,8 @@ function keysOfHolders({ itemId, locationId }: Scope): string[] {
 }
 
 /**
- * Overrides by week of the plan, in order, as far as they matter. Left out are clears and what they cleared: a clear removes earlier overrides of the same
- * or a finer scope in its weeks, as if they had never been made. So is a series' override that a later *set to* of the same series makes void, with no
- * total between them that its value could have entered.
+ * Overrides by week of the plan, in order, without the clears and what they cleared: a clear removes earlier overrides of the same or a finer
+ * scope in its weeks, as if they had never been made.
  */
 export function overridesByWeek<Override extends ReplayedOverride>(
   overrides: readonly Override[],
@@ -92,27 +91,34 @@ export function overridesByWeek<Override extends ReplayedOverride>(
     const last = Math.min(planWeeks - 1, weeksBetween(planFirstWeek, override.lastWeek));
     for (let week = first; week <= last; week++) byWeek[week]!.push(override);
   }
-  return byWeek.map(leaveOutVoid);
+  return byWeek.map((ofWeek) => {
+    if (!ofWeek.some(({ operation }) => operation === 'clear')) return ofWeek;
+    const cleared = new Set<string>();
+    return keepBackwards(ofWeek, ({ operation, scope }) => {
+      if (operation !== 'clear') return !keysOfHolders(scope).some((key) => cleared.has(key));
+      cleared.add(scopeKey(scope));
+      return false;
+    });
+  });
 }
 
-function leaveOutVoid<Override extends ReplayedOverride>(ofWeek: readonly Override[]): Override[] {
-  const cleared = new Set<string>();
+/** Leaves out a series' overrides that a later *set to* of the same series makes void, with no total between them that their value could enter. */
+function leaveOutVoid(ofWeek: readonly ReplayedOverride[]): readonly ReplayedOverride[] {
+  if (ofWeek.length < 2) return ofWeek;
   const setLater = new Set<string>();
-  const kept: Override[] = [];
-  for (let i = ofWeek.length - 1; i >= 0; i--) {
-    const override = ofWeek[i]!;
-    const { scope, operation } = override;
+  return keepBackwards(ofWeek, ({ operation, scope }) => {
     const key = scopeKey(scope);
-    if (operation === 'clear') {
-      cleared.add(key);
-      continue;
-    }
-    if (cleared.size > 0 && keysOfHolders(scope).some((holder) => cleared.has(holder))) continue;
     if (scope.itemId === null || scope.locationId === null) setLater.clear();
-    else if (setLater.has(key)) continue;
+    else if (setLater.has(key)) return false;
     else if (operation === 'set to') setLater.add(key);
-    kept.push(override);
-  }
+    return true;
+  });
+}
+
+/** Asks from the last to the first; what is kept stays in order. */
+function keepBackwards<Override>(all: readonly Override[], isKept: (override: Override) => boolean): Override[] {
+  const kept: Override[] = [];
+  for (let i = all.length - 1; i >= 0; i--) if (isKept(all[i]!)) kept.push(all[i]!);
   return kept.reverse();
 }
 
@@ -169,7 +175,7 @@ export function replayOverrides(input: ReplayInput): Replay {
     fixed.fill(0);
     for (let i = 0; i < ticks.length; i++) ticks[i] = Math.round(plan[i]![week]! * ticksPerUnit);
 
-    for (const override of ofWeek) {
+    for (const override of leaveOutVoid(ofWeek)) {
       const { scope, operation, id } = override;
       const value = override.value ?? 0;
       const members = membersOf(scope);

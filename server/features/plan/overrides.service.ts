@@ -16,6 +16,7 @@ import {
   describeOverrides,
   findClashes,
   replayState,
+  whyUnmet,
 } from './plan-state.ts';
 import { insertVersion, snapshotEvery, type NewStoredOverride } from './plan-writing.repository.ts';
 import * as repository from './plan.repository.ts';
@@ -299,12 +300,6 @@ async function demandFresh(
     { conflicts },
   );
 }
-
-const whyUnmet = {
-  locked: 'the week is locked',
-  fixed: 'values set on items or locations under this total leave no way to meet it: change or clear them first',
-  'no-room': 'it would take more units away than are planned, or the unit steps can’t make it',
-} as const;
 
 function demandMet(unmet: readonly { id: number; weekStart: string; reason: keyof typeof whyUnmet }[]): void {
   // Stored overrides have positive ids; one of them that can't be met any more waits for a decision instead.

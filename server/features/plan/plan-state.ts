@@ -7,8 +7,9 @@ import {
   scopesMeet,
   type Replay,
   type Scope,
+  type UnmetReason,
 } from '../../../shared/domain/override-arithmetic.ts';
-import { listWeeks, weeksBetween } from '../../../shared/domain/weeks.ts';
+import { listWeeks, weekLabel, weeksBetween } from '../../../shared/domain/weeks.ts';
 import type { StoredOverride, StoredSeries } from './plan.repository.ts';
 
 /** The weeks of a plan. */
@@ -97,8 +98,15 @@ export function comparePlans(
   return change;
 }
 
+/** Why an override can't be met, as the end of a sentence. */
+export const whyUnmet: Readonly<Record<UnmetReason, string>> = {
+  locked: 'the week is locked',
+  fixed: 'values set on items or locations under this total leave no way to meet it',
+  'no-room': 'it would take more units away than are planned, or the unit steps can’t make it',
+};
+
 /**
- * Overrides in force, for the grid: those that aren't cleared or made void in every week of the window, and the clears that still matter for one of them.
+ * Overrides in force, for the grid: those that aren't cleared in every week of the window, and the clears that still matter for one of them.
  * An override is due another look where, over the weeks in which nothing of the same scope was set after it, its model has moved by more than
  * `lookThreshold` of what it was; it needs a decision where it can't be met in such a week.
  */
@@ -137,7 +145,9 @@ export function describeOverrides(state: {
   const unmet = new Map<number, string>();
   for (const { id, weekStart, reason } of state.unmet) {
     const week = weeksBetween(window.firstWeek, weekStart);
-    if (reason !== 'locked' && openWeeks.get(id)?.includes(week) === true) unmet.set(id, reason);
+    if (reason !== 'locked' && openWeeks.get(id)?.includes(week) === true && !unmet.has(id)) {
+      unmet.set(id, `${weekLabel(weekStart)}: ${whyUnmet[reason]}`);
+    }
   }
   const inForce = new Map<string, StoredOverride[]>();
   for (const override of overrides) {

@@ -7,7 +7,6 @@ import type {
   LineState,
   OverrideInForce,
   PlanSeries,
-  Round,
   TotalRange,
   VersionSummary,
   Weekline,
@@ -436,29 +435,6 @@ async function comingPromotions(tx: Tx, heads: readonly LineHead[], run: RunHead
     run.firstWeek,
     run.weeks,
   );
-}
-
-/** State of a line, for pages that list lines. */
-export interface LineStateSummary {
-  line: Named;
-  category: Named;
-  state: LineState;
-  version: VersionSummary | null;
-  run: RunHead | null;
-  round: Round | null;
-  /** Every locked week, ascending, also those already sold. */
-  locked: LockedWeek[];
-  handOver: HandOver | null;
-}
-
-/** States of all lines of the categories (null = all), by category and line name. */
-export async function lineStates(tx: Tx, categoryIds: readonly number[] | null): Promise<LineStateSummary[]> {
-  const heads = await repository.listLineHeads(tx, { lineIds: null, categories: categoryIds });
-  return heads.map((head) => {
-    const state = deriveLineState(head);
-    const { line, category, version, run, round, locked } = head;
-    return { line, category, state, version, run, round, locked, handOver: shownHandOver(head, state) };
-  });
 }
 
 /** A version of a line with everything that a pack prints of it. */

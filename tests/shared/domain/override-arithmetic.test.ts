@@ -442,13 +442,6 @@ test('overrides are listed by the weeks that they are in force, cleared ones lef
   expect(byWeek.map((ofWeek) => ofWeek.map(({ id }) => id))).toEqual([[1], [], [1, 3]]);
 });
 
-test('a series’ override that a later one makes void is left out, unless a total lies between them', () => {
-  const list = (...given: Change[]) => overridesByWeek(changes(...given), firstWeek, 1)[0]!.map(({ id }) => id);
-  expect(list([cell(1, 1), 'add', 5], [cell(2, 1), 'set to', 6], [cell(1, 1), 'set to', 7])).toEqual([2, 3]);
-  expect(list([cell(1, 1), 'set to', 5], [cell(1, 1), 'add', 7])).toEqual([1, 2]);
-  expect(list([cell(1, 1), 'set to', 5], [item(1), 'set to', 6], [cell(1, 1), 'set to', 7])).toEqual([1, 2, 3]);
-});
-
 test('scopes hold what lies under them and meet where they share a series', () => {
   expect(scopeHolds(lineScope, cell(1, 2))).toBe(true);
   expect(scopeHolds(item(1), location(2))).toBe(false);
