@@ -303,7 +303,7 @@ function Band({ weeks, soldWeeks, width, range, onRangeChange, caption }: BandPr
           <text x={seamX - 7} y="14" textAnchor="end" fontSize="11" fontWeight="600" fill="var(--ink)">
             {t('weekline.soldTo', { week: shortWeekLabel(weeks[soldWeeks - 1]?.weekStart ?? firstWeek) })}
           </text>
-          {soldWeeks < weeks.length && width - seamX > 130 && (
+          {soldWeeks < weeks.length && width - seamX > 114 && (
             <text x={seamX + 7} y="14" fontSize="11" fontWeight="600" fill="var(--ink)">
               {t('weekline.plannedFrom', { week: shortWeekLabel(weeks[soldWeeks]?.weekStart ?? firstWeek) })}
             </text>

@@ -9,12 +9,20 @@ export interface PromotionBar {
   first: number;
   last: number;
   lane: number;
+  /** The label doesn't fit inside and stands after the bar. */
+  isLabelBeside: boolean;
 }
 
-/** Bars of the promotions that hold any of the items, in lanes without overlap. */
+/** Width that a label takes, in weeks of the usual 43 px at 11 px type. */
+function weeksOfLabel(label: string): number {
+  return (label.length * 6 + 14) / 43;
+}
+
+/** Bars of the promotions that hold any of the items, in lanes in which neither bars nor the labels beside them overlap. */
 export function layBars(
   view: Pick<CalendarView, 'firstWeek' | 'weeks' | 'promotions'>,
   itemIds: readonly number[],
+  labelOf: (promotion: CalendarPromotion) => string = ({ name }) => name,
 ): PromotionBar[] {
   const wanted = new Set(itemIds);
   const laneEnds: number[] = [];
@@ -28,10 +36,12 @@ export function layBars(
     .filter(({ promotion, first, last }) => last >= first && promotion.itemIds.some((id) => wanted.has(id)))
     .sort((a, b) => a.first - b.first || b.last - a.last || a.index - b.index)
     .map((bar) => {
-      const free = laneEnds.findIndex((end) => end < bar.first);
+      const needed = weeksOfLabel(labelOf(bar.promotion));
+      const isLabelBeside = needed > bar.last - bar.first + 1 && bar.last + 1 + needed <= view.weeks;
+      const free = laneEnds.findIndex((end) => end <= bar.first);
       const lane = free === -1 ? laneEnds.length : free;
-      laneEnds[lane] = bar.last;
-      return { ...bar, lane };
+      laneEnds[lane] = bar.last + 1 + (isLabelBeside ? needed : 0);
+      return { ...bar, lane, isLabelBeside };
     });
 }
 

@@ -32,11 +32,14 @@ export function giveMeaning(mapping: ImportMapping, index: number, meaning: Colu
   };
 }
 
-export type MissingPart = 'week' | 'item' | 'units' | 'category' | 'line' | 'mechanic' | 'planned';
+export type MissingPart = 'week' | 'item' | 'units' | 'mechanic' | 'planned';
 
 const planned: ColumnMeaning[] = ['regular-price', 'depth', 'feature', 'display', 'mechanic'];
 
-/** What still has to be answered before the file can be read with this mapping. */
+/**
+ * What still has to be answered before the file can be read with this mapping. Whether it needs a category or a line chosen only the
+ * server knows, who knows the items: it says so among the findings.
+ */
 export function listMissing(mapping: ImportMapping): MissingPart[] {
   const has = (meaning: ColumnMeaning) => mapping.columns.some((column) => column.meaning === meaning);
   const missing: MissingPart[] = [];
@@ -44,8 +47,6 @@ export function listMissing(mapping: ImportMapping): MissingPart[] {
   if (!has('item')) missing.push('item');
   if (mapping.kind === 'sales') {
     if (!has('units')) missing.push('units');
-    if (!has('category') && mapping.categoryId === null) missing.push('category');
-    if (!has('line') && mapping.lineId === null && !mapping.newLineName?.trim()) missing.push('line');
   } else if (!planned.some(has)) {
     missing.push('planned');
   }

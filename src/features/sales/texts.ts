@@ -73,10 +73,16 @@ export const salesTexts = {
     route: { read: 'read', check: 'checked, yours to accept', held: 'in force' },
     routeLabel: 'Where the file stands',
     refusedTitle: 'This file can’t be read',
-    lockedWeeks_one:
-      'One week of this file is locked in a plan. Its sales are taken in all the same; the locked number stays.',
-    lockedWeeks_other:
-      '{{count}} weeks of this file are locked in a plan. Their sales are taken in all the same; the locked numbers stay.',
+    locked: {
+      sales_one:
+        'One week of this file is locked in a plan, {{weeks}}. Its sales are taken in all the same; the locked number stays.',
+      sales_other:
+        '{{count}} weeks of this file are locked in a plan, between {{weeks}}. Their sales are taken in all the same; the locked numbers stay.',
+      calendar_one:
+        'One week of this file is locked in a plan, {{weeks}}: what is planned here doesn’t change the locked number.',
+      calendar_other:
+        '{{count}} weeks of this file are locked in a plan, between {{weeks}}: what is planned here doesn’t change the locked numbers.',
+    },
   },
   reading: {
     title: 'The file as Fairweek reads it',
@@ -115,8 +121,6 @@ export const salesTexts = {
       week: 'Which column names the week?',
       item: 'Which column names the item?',
       units: 'Which column holds the units?',
-      category: 'No column names the category: choose it above.',
-      line: 'No column names the line: choose it above, or name a new one.',
       mechanic: 'Each mechanic needs a name.',
       planned:
         'A file of promotions and prices needs a column for regular price, depth, feature, display or a mechanic.',
@@ -144,6 +148,7 @@ export const salesTexts = {
   },
   weeks: {
     title: 'Weeks in the file, beside the weeks held',
+    titleCalendar: 'Weeks in the file',
     caption: 'Weeks in the file beside the weeks held',
     week: 'Week',
     rows: 'rows',
@@ -158,7 +163,7 @@ export const salesTexts = {
     all_one: '{{count}} week',
     all_other: '{{count}} weeks',
     showAll: 'Show all {{n}} weeks',
-    showFew: 'Show the last ones only',
+    showFew: 'Show a few only',
     replaced: 'Of the {{rows}} rows, {{held}} name an item week that is already held; {{changed}} of them change it.',
   },
   findings: {

@@ -1,6 +1,6 @@
 import { Fragment, useState } from 'react';
 import { useTranslation } from 'react-i18next';
-import type { CalendarView } from '../../../../shared/contracts/calendar.ts';
+import type { CalendarPromotion, CalendarView } from '../../../../shared/contracts/calendar.ts';
 import { addWeeks, listWeeks, shortWeekLabel, weekLabel, weeksBetween } from '../../../../shared/domain/weeks.ts';
 import { formatDate, formatMoney, formatMonth, formatPercent, formatWeekSpan } from '../../../lib/format.ts';
 import { useCurrency } from '../../../lib/settings.ts';
@@ -82,18 +82,14 @@ export function CalendarGrid({ view, seamAfter, chosen, onChoose }: GridProps) {
             {holidays.map((days, position) => (
               <td
                 key={weeks[position]}
-                className={`relative h-9 text-center align-bottom ${seamAt === position ? 'border-l-2 border-dashed border-ink' : 'border-l border-line'}`}
+                className={`relative h-11 p-0 ${seamAt === position ? 'border-l-2 border-dashed border-ink' : 'border-l border-line'}`}
               >
                 {days.length > 0 && (
-                  <span
-                    className="block truncate text-tiny"
-                    title={days.map(({ name, date }) => `${name}, ${formatDate(date)}`).join('; ')}
-                  >
-                    {days.map(({ name }) => name).join(', ')}
-                    <svg className="mx-auto -mb-1 block" width="10" height="9" viewBox="0 0 10 9" aria-hidden="true">
-                      <path d="M5 .5L9 4.5L5 8.5L1 4.5Z" fill="var(--ink)" />
-                    </svg>
-                  </span>
+                  <HolidayMark
+                    days={days}
+                    isLow={isHolidayLow(holidays, position)}
+                    isAtRim={position > view.weeks - 3}
+                  />
                 )}
               </td>
             ))}
@@ -119,10 +115,7 @@ export function CalendarGrid({ view, seamAfter, chosen, onChoose }: GridProps) {
                   <td colSpan={view.weeks} className="h-px p-0 align-top">
                     <Track
                       view={view}
-                      bars={layBars(
-                        view,
-                        line.items.map(({ id }) => id),
-                      )}
+                      itemIds={line.items.map(({ id }) => id)}
                       seamAt={seamAt}
                       chosen={chosen}
                       onChoose={onChoose}
@@ -141,7 +134,7 @@ export function CalendarGrid({ view, seamAfter, chosen, onChoose }: GridProps) {
                       <td colSpan={view.weeks} className="h-px p-0 align-top">
                         <Track
                           view={view}
-                          bars={layBars(view, [item.id])}
+                          itemIds={[item.id]}
                           steps={listPriceSteps(view, item.id)}
                           seamAt={seamAt}
                           chosen={chosen}
@@ -160,9 +153,42 @@ export function CalendarGrid({ view, seamAfter, chosen, onChoose }: GridProps) {
   );
 }
 
+/** Neighbouring holidays write their names in turn above and below. */
+function isHolidayLow(holidays: readonly unknown[][], position: number): boolean {
+  let run = 0;
+  for (let before = position - 1; before >= 0 && (holidays[before]?.length ?? 0) > 0; before -= 1) run += 1;
+  return run % 2 === 1;
+}
+
+function HolidayMark({ days, isLow, isAtRim }: { days: CalendarView['holidays']; isLow: boolean; isAtRim: boolean }) {
+  const first = days[0]?.name ?? '';
+  return (
+    <span title={days.map(({ name, date }) => `${name}, ${formatDate(date)}`).join('; ')}>
+      <span
+        className={`absolute text-[10.5px]/[13px] whitespace-nowrap ${isLow ? 'top-[17px]' : 'top-[3px]'} ${
+          isAtRim ? 'right-0' : 'left-1/2 -translate-x-1/2'
+        }`}
+      >
+        {first}
+        {days.length > 1 && ` +${days.length - 1}`}
+        <span className="sr-only">{days.slice(1).map(({ name }) => `, ${name}`)}</span>
+      </span>
+      <svg
+        className="absolute -bottom-[5px] left-1/2 z-10 -ml-[5px]"
+        width="10"
+        height="9"
+        viewBox="0 0 10 9"
+        aria-hidden="true"
+      >
+        <path d="M5 .5L9 4.5L5 8.5L1 4.5Z" fill="var(--ink)" stroke="var(--paper)" strokeWidth=".8" />
+      </svg>
+    </span>
+  );
+}
+
 function Track({
   view,
-  bars,
+  itemIds,
   steps = [],
   seamAt,
   chosen,
@@ -170,7 +196,7 @@ function Track({
   isTermShown = false,
 }: {
   view: CalendarView;
-  bars: PromotionBar[];
+  itemIds: number[];
   steps?: PriceStep[];
   seamAt: number | null;
   chosen: number | null;
@@ -179,6 +205,11 @@ function Track({
 }) {
   const { t } = useTranslation('calendar');
   const currency = useCurrency();
+  const labelOf = (promotion: CalendarPromotion) =>
+    isTermShown && promotion.depth !== null && promotion.depth > 0
+      ? t('off', { depth: formatPercent(promotion.depth, 0) })
+      : promotion.name;
+  const bars = layBars(view, itemIds, labelOf);
   const percent = (weeks: number) => `${(weeks / view.weeks) * 100}%`;
   const lanes = Math.max(1, ...bars.map(({ lane }) => lane + 1));
   const stepRoom = steps.length > 0 ? 18 : 0;
@@ -233,11 +264,7 @@ function Track({
           width={percent(bar.last - bar.first + 1)}
           isChosen={bar.index === chosen}
           onChoose={() => onChoose(bar.index === chosen ? null : bar.index)}
-          label={
-            isTermShown && bar.promotion.depth !== null && bar.promotion.depth > 0
-              ? t('off', { depth: formatPercent(bar.promotion.depth, 0) })
-              : bar.promotion.name
-          }
+          label={labelOf(bar.promotion)}
         />
       ))}
     </div>
@@ -286,7 +313,11 @@ function Bar({
         />
       </svg>
       <span
-        className={`relative overflow-hidden pl-1.5 text-tiny font-[560] text-ellipsis whitespace-nowrap ${isChosen ? 'text-[#1e2a26]' : 'text-turmeric'}`}
+        className={`text-tiny font-[560] whitespace-nowrap ${
+          bar.isLabelBeside
+            ? 'absolute left-full pl-1.5 text-turmeric'
+            : `relative overflow-hidden pl-1.5 text-ellipsis ${isChosen ? 'text-on-pennant' : 'text-turmeric'}`
+        }`}
       >
         {label}
       </span>

@@ -27,7 +27,7 @@ export function PackTable({
     showToast({ tone: 'done', text: t('list.copied') });
   };
   return (
-    <Table caption={t('list.caption', { category: categoryName })}>
+    <Table caption={t('list.caption', { category: categoryName })} className="[&_tbody>tr>*]:align-top">
       <thead>
         <tr>
           <th scope="col">{t('list.number')}</th>

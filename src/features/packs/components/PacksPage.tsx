@@ -48,34 +48,38 @@ function Packs({ categoryId, categoryName, list }: { categoryId: number; categor
   const job = useJob(jobId, onEnd);
   const isWorking = job !== null && job.state !== 'done';
   return (
-    <div className="grid grid-cols-1 gap-x-12 gap-y-8 min-[1200px]:grid-cols-[minmax(0,8fr)_minmax(0,5fr)]">
+    <div
+      className={`grid grid-cols-1 gap-x-12 gap-y-8 ${list.mayBuild ? 'min-[1200px]:grid-cols-[minmax(0,8fr)_minmax(0,5fr)]' : 'max-w-[1000px]'}`}
+    >
       <Section title={t('list.title')}>
         {list.packs.length === 0 ? (
           <EmptyState title={t('list.emptyTitle')}>{t('list.empty')}</EmptyState>
         ) : (
           <PackTable packs={list.packs} categoryName={categoryName} mayDownload={list.mayDownload} />
         )}
-        <p className="mt-3 max-w-[640px] text-small text-soft">{t('holds')}</p>
+        <p className="mt-3 max-w-[640px] text-small text-soft">
+          {t('holds')} {!list.mayBuild && t('build.notYours')}
+        </p>
       </Section>
-      <Section title={t('build.title', { number: nextNumber })} aside={list.mayBuild ? t('build.lead') : undefined}>
-        {isWorking && (
-          <div className="mb-4">
-            <JobProgress job={job} />
-          </div>
-        )}
-        {list.mayBuild && list.offer ? (
-          <PackBuilder
-            key={list.offer.lines.map(({ id, lockedVersion }) => `${id}:${lockedVersion ?? ''}`).join()}
-            categoryId={categoryId}
-            offer={list.offer}
-            isBusy={build.isPending || (isWorking && job.state !== 'failed')}
-            error={build.error}
-            onBuild={(body) => build.mutate(body)}
-          />
-        ) : (
-          <p className="text-soft">{t('build.notYours')}</p>
-        )}
-      </Section>
+      {(list.mayBuild || isWorking) && (
+        <Section title={t('build.title', { number: nextNumber })} aside={t('build.lead')}>
+          {isWorking && (
+            <div className="mb-4">
+              <JobProgress job={job} />
+            </div>
+          )}
+          {list.mayBuild && list.offer && (
+            <PackBuilder
+              key={list.offer.lines.map(({ id, lockedVersion }) => `${id}:${lockedVersion ?? ''}`).join()}
+              categoryId={categoryId}
+              offer={list.offer}
+              isBusy={build.isPending || (isWorking && job.state !== 'failed')}
+              error={build.error}
+              onBuild={(body) => build.mutate(body)}
+            />
+          )}
+        </Section>
+      )}
     </div>
   );
 }

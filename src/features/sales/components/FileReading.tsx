@@ -18,12 +18,15 @@ const sureEnough = 0.75;
 export function FileReading({
   detail,
   mapping,
+  obstacle,
   isChanged,
   onChange,
   onRead,
 }: {
   detail: ImportDetail;
   mapping: ImportMapping;
+  /** What the server still asks for, in words. */
+  obstacle: string | null;
   isChanged: boolean;
   onChange: (mapping: ImportMapping) => void;
   /** The server has the changed mapping. */
@@ -45,13 +48,14 @@ export function FileReading({
   return (
     <Section title={t('reading.title')}>
       <ReadingOptions detail={detail} mapping={mapping} isOpen={isOpen} onChange={onChange} />
-      {missing.length > 0 && (
+      {(missing.length > 0 || obstacle !== null) && (
         <div role="status" className="mt-4 border-l-2 border-madder py-1 pl-3">
           <b className="text-madder">{t('reading.missing.title')}</b>
           <ul>
             {missing.map((part) => (
               <li key={part}>{t(`reading.missing.${part}`)}</li>
             ))}
+            {missing.length === 0 && <li>{obstacle}</li>}
           </ul>
         </div>
       )}

@@ -15,10 +15,12 @@ export function Findings({ detail }: { detail: ImportDetail }) {
     <div className="grid gap-5">
       {verdicts.map((verdict) => {
         const count = detail.findingCounts
-          .filter((entry) => entry.verdict === verdict)
+          .filter((entry) => entry.verdict === verdict && entry.kind !== 'mapping-incomplete')
           .reduce((sum, entry) => sum + entry.count, 0);
         if (count === 0) return null;
-        const shown = detail.findings.filter((finding) => finding.verdict === verdict);
+        const shown = detail.findings.filter(
+          (finding) => finding.verdict === verdict && finding.kind !== 'mapping-incomplete',
+        );
         return (
           <section key={verdict}>
             <div className="flex items-baseline justify-between gap-4">
@@ -69,9 +71,9 @@ function FindingTable({ verdict, findings }: { verdict: (typeof verdicts)[number
               )}
             </td>
             <td>{finding.detail}</td>
-            <td className="text-right">
+            <td className="w-[150px] text-right">
               {finding.before !== null && (
-                <span className="text-madder line-through decoration-1 break-all">
+                <span className="text-madder line-through decoration-1 [overflow-wrap:anywhere]">
                   <span className="sr-only">{t('findings.before')}: </span>
                   {finding.before}
                 </span>

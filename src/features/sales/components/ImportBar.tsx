@@ -15,11 +15,14 @@ import { WithdrawDialog } from './WithdrawDialog.tsx';
 export function ImportBar({
   detail,
   isChanged,
+  obstacle,
   isYesMissing,
   createUnknown,
 }: {
   detail: ImportDetail;
   isChanged: boolean;
+  /** What the server asks for before it accepts. */
+  obstacle: string | null;
   isYesMissing: boolean;
   createUnknown: boolean;
 }) {
@@ -42,7 +45,7 @@ export function ImportBar({
       // Shown in the bar.
     }
   };
-  const advice = isChanged ? t('bar.readAgain') : isYesMissing ? t('unknown.needed') : null;
+  const advice = isChanged ? t('bar.readAgain') : (obstacle ?? (isYesMissing ? t('unknown.needed') : null));
 
   return (
     <section

@@ -3,13 +3,12 @@ import { useState } from 'react';
 import { useTranslation } from 'react-i18next';
 import { useParams } from 'react-router-dom';
 import type { ImportDetail, ImportMapping } from '../../../../shared/contracts/sales.ts';
-import { weekLabel } from '../../../../shared/domain/weeks.ts';
 import { ActLink } from '../../../components/Button.tsx';
 import { Page, PageHead, Section } from '../../../components/Page.tsx';
 import { JobProgress } from '../../../components/ProgressBar.tsx';
 import { QueryStates } from '../../../components/states.tsx';
 import { useCategoryInView, withCategory } from '../../../lib/categories.ts';
-import { formatBytes, formatInstant } from '../../../lib/format.ts';
+import { formatBytes, formatInstant, formatWeekSpan } from '../../../lib/format.ts';
 import { useJob } from '../../../lib/jobs.ts';
 import { useTitle } from '../../../lib/use-title.ts';
 import { isSameMapping } from '../mapping.ts';
@@ -46,6 +45,7 @@ function OneImport({ detail }: { detail: ImportDetail }) {
   const mapping = draft ?? detail.mapping;
   const isChanged = draft !== null && detail.mapping !== null && !isSameMapping(draft, detail.mapping);
   const isOpen = detail.state === 'to-check';
+  const obstacle = isOpen ? (detail.findings.find(({ kind }) => kind === 'mapping-incomplete')?.detail ?? null) : null;
   const hasNewNames =
     detail.unknown !== null &&
     Object.values(detail.unknown).some((names: readonly unknown[]) => names.length > 0) &&
@@ -84,8 +84,10 @@ function OneImport({ detail }: { detail: ImportDetail }) {
         )}
         {detail.lockedWeeks.length > 0 && isOpen && (
           <p className="border-l-2 border-ink py-1 pl-3">
-            {t('page.lockedWeeks', { count: detail.lockedWeeks.length })}{' '}
-            <span className="text-soft">{detail.lockedWeeks.map(weekLabel).join(', ')}</span>
+            {t(`page.locked.${mapping?.kind ?? detail.kind}`, {
+              count: detail.lockedWeeks.length,
+              weeks: formatWeekSpan(detail.lockedWeeks[0] ?? '', detail.lockedWeeks.at(-1) ?? '', t('common:and')),
+            })}
           </p>
         )}
         {detail.refusal !== null && (
@@ -101,6 +103,7 @@ function OneImport({ detail }: { detail: ImportDetail }) {
           <div className="grid min-w-0 grid-cols-[minmax(0,1fr)] content-start gap-8">
             <FileReading
               detail={detail}
+              obstacle={isChanged ? null : obstacle}
               mapping={mapping}
               isChanged={isChanged}
               onChange={setDraft}
@@ -120,7 +123,13 @@ function OneImport({ detail }: { detail: ImportDetail }) {
           </div>
         </div>
       )}
-      <ImportBar detail={detail} isChanged={isChanged} isYesMissing={hasNewNames && !isYes} createUnknown={isYes} />
+      <ImportBar
+        detail={detail}
+        isChanged={isChanged}
+        obstacle={detail.totals === null || isYes ? obstacle : null}
+        isYesMissing={hasNewNames && !isYes}
+        createUnknown={isYes}
+      />
     </Page>
   );
 }

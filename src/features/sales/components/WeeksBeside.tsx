@@ -12,10 +12,10 @@ const few = 8;
 export function WeeksBeside({ totals, isSales }: { totals: NonNullable<ImportDetail['totals']>; isSales: boolean }) {
   const { t } = useTranslation('sales');
   const [isAll, setAll] = useState(false);
-  const weeks = isAll ? totals.byWeek : totals.byWeek.slice(-few);
+  const weeks = isAll ? totals.byWeek : isSales ? totals.byWeek.slice(-few) : totals.byWeek.slice(0, few);
   const rows = totals.byWeek.reduce((sum, week) => sum + week.rows, 0);
   return (
-    <Section title={t('weeks.title')}>
+    <Section title={t(isSales ? 'weeks.title' : 'weeks.titleCalendar')}>
       <Table caption={t('weeks.caption')}>
         <thead>
           <tr>

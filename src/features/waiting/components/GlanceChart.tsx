@@ -34,7 +34,12 @@ export function GlanceChart({
     const isContinued = position > 0 && weeks[position - 1]?.lastYear !== null;
     lastYear += `${isContinued ? 'L' : 'M'}${xOf(position) + pitch / 2} ${yOf(week.lastYear)}`;
   });
-  const firstKnown = weeks.findIndex((week) => week.lastYear !== null);
+  const lastKnown = weeks.findLastIndex((week) => week.lastYear !== null);
+  const labelTop = Math.min(
+    ...weeks
+      .slice(Math.max(0, lastKnown - 2), lastKnown + 1)
+      .map((week) => yOf(Math.max(week.lastYear ?? 0, week.units ?? 0))),
+  );
   const seamX = xOf(soldWeeks);
   return (
     <svg viewBox={`0 0 ${width} 218`} className="block w-full" role="img" aria-label={label}>
@@ -60,16 +65,8 @@ export function GlanceChart({
       )}
       <path d={lastYear} fill="none" stroke="var(--paper)" strokeWidth="3.5" />
       <path d={lastYear} fill="none" stroke="var(--ink)" strokeWidth="1.6" strokeDasharray="2 2.5" />
-      {firstKnown >= 0 && (
-        <text
-          x={xOf(firstKnown) + 2}
-          y={yOf(weeks[firstKnown]?.lastYear ?? 0) - 8}
-          fontSize="11"
-          fill="var(--ink)"
-          stroke="var(--paper)"
-          strokeWidth="3"
-          paintOrder="stroke"
-        >
+      {lastKnown >= 0 && (
+        <text x={xOf(lastKnown + 1)} y={labelTop - 7} textAnchor="end" fontSize="11" fill="var(--ink)">
           {t('glance.lastYear')}
         </text>
       )}

@@ -49,17 +49,17 @@ function Row({ entry, position }: { entry: WaitingEntry; position: number }) {
     detail: entry.detail ?? '',
   };
   const detail = wordDetail(entry);
+  const place = entry.categoryName !== null && entry.categoryName !== entry.subject ? entry.categoryName : null;
   const [day, clock] = entry.at === null ? [null, null] : splitInstant(formatInstant(entry.at));
   return (
     <tr className="border-b border-line align-top">
       <td className="w-10 py-3 font-display text-[24px]/6 font-[560] [font-stretch:85%]">{position}</td>
       <th scope="row" className="py-3 text-left font-normal">
         <span className="block text-lead font-semibold">{t(`entry.${entry.kind}.title`, names)}</span>
-        {detail !== null && (
-          <span className={`mt-0.5 block max-w-[460px] text-body/[18px] text-soft ${detail.isQuoted ? 'italic' : ''}`}>
-            {t(detail.key, detail.values)}
-          </span>
-        )}
+        <span className="mt-0.5 block max-w-[460px] text-body/[18px] text-soft">
+          {place !== null && `${place}. `}
+          {detail !== null && <span className={detail.isQuoted ? 'italic' : ''}>{t(detail.key, detail.values)}</span>}
+        </span>
       </th>
       <td className="num w-[104px] py-3">
         {entry.stake !== null && (
