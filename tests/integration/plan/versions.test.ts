@@ -1,5 +1,7 @@
 import { afterAll, beforeAll, expect, it } from 'vitest';
 import { VersionList } from '../../../shared/contracts/plan.ts';
+import { inTransaction } from '../../../server/lib/database.ts';
+import { packContentSource } from '../../../server/features/plan/plan.service.ts';
 import { createRandom } from '../../../server/forecasting/ranges/random.ts';
 import {
   forecast,
@@ -93,6 +95,12 @@ it('rebuilds every version as it was shown, over overrides, locks, unlocks, fore
   }
   const locked = versions.filter(({ isLockedVersion }) => isLockedVersion);
   expect(locked.length).toBe(2);
+  for (const { number } of locked) {
+    const content = await inTransaction(world.deps.database, (tx) => packContentSource(tx, world.lineId, number));
+    expect(numbersOf(content)).toEqual(shown.get(number)!.numbers);
+    expect(content.locked.length).toBeGreaterThan(0);
+    expect(content.overrides.every((override) => override.version <= number)).toBe(true);
+  }
 }, 300_000);
 
 it('shows versions to nobody outside the category, and none that don’t exist', async () => {
