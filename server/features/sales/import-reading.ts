@@ -155,8 +155,11 @@ function toContractMapping(
 
 /** A person's mapping. Where it points to another sheet or header row than its columns come from, the columns are proposed anew. */
 async function followMapping(table: OpenedTable, given: ImportMapping, context: ReadingContext): Promise<Proposed> {
-  const sheet = table.sheets.find(({ name }) => name === (given.sheet ?? '')) ?? table.sheets[0];
-  if (!sheet) throw new UnreadableFileError('empty', 'The file has no sheet with a table. Send another file.');
+  const sheet = given.sheet === null ? table.sheets[0] : table.sheets.find(({ name }) => name === given.sheet);
+  if (!sheet) {
+    const detail = `The sheet “${given.sheet ?? ''}” can’t be read: it is hidden or empty. Choose another, or show it in your spreadsheet program and send the file again.`;
+    throw new UnreadableFileError('no-header', detail);
+  }
   const rows: TableRow[] = [];
   let headerCells: readonly CellValue[] = [];
   for await (const row of flattenBatches(sheet.batches())) {

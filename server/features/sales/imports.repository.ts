@@ -7,6 +7,7 @@ import type {
   UnknownNames,
 } from '../../../shared/contracts/sales.ts';
 import { execute, selectRow, selectRows, type Tx } from '../../lib/database.ts';
+import { toJsonText } from './json-text.ts';
 import type { RangeSnapshot } from './range-resolver.ts';
 
 /** What the last reading found beside totals and findings. */
@@ -110,7 +111,7 @@ export async function setMapping(tx: Tx, id: number, mapping: ImportMapping): Pr
     `update "import" set mapping = $mapping::jsonb, kind = $kind, state = 'reading', refusal = null where id = $id`,
     {
       id,
-      mapping: JSON.stringify(mapping),
+      mapping: toJsonText(mapping),
       kind: mapping.kind,
     },
   );
@@ -135,9 +136,9 @@ export async function setRead(
     {
       id,
       kind: read.mapping.kind,
-      mapping: JSON.stringify(read.mapping),
-      totals: read.totals === null ? null : JSON.stringify(read.totals),
-      preview: JSON.stringify(read.preview),
+      mapping: toJsonText(read.mapping),
+      totals: read.totals === null ? null : toJsonText(read.totals),
+      preview: toJsonText(read.preview),
     },
   );
 }
@@ -146,7 +147,7 @@ export async function setAccepted(tx: Tx, id: number, actorId: number, totals: I
   await execute(
     tx,
     `update "import" set state = 'accepted', accepted_at = now(), accepted_by = $actorId, totals = $totals::jsonb where id = $id`,
-    { id, actorId, totals: JSON.stringify(totals) },
+    { id, actorId, totals: toJsonText(totals) },
   );
 }
 
@@ -181,7 +182,7 @@ export async function replaceFindings(
       `insert into import_finding (import_id, sheet, cell, row, kind, before, after, verdict, detail, row_values)
        select $id::int, sheet, cell, row, kind, before, after, verdict, detail, "rowValues"
        from jsonb_to_recordset($findings::jsonb) as f(sheet text, cell text, row int, kind text, before text, after text, verdict text, detail text, "rowValues" jsonb)`,
-      { id, findings: JSON.stringify(findings.slice(start, start + findingsAtOnce)).replaceAll('\\u0000', '') },
+      { id, findings: toJsonText(findings.slice(start, start + findingsAtOnce)) },
     );
   }
 }

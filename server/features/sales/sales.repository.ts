@@ -65,6 +65,10 @@ export function selectLineHistory(tx: Tx, lineId: number, through: string | null
   );
 }
 
+/** Of a row `w` of sales_week: a feature, display or mechanic, or a price 5 % below the regular one. */
+const isPromoted = `(coalesce(w.feature, 0) > 0 or coalesce(w.display, 0) > 0 or coalesce(w.price < 0.95 * w.regular_price, false)
+  or exists (select from jsonb_each(w.mechanics) e where e.value::text::float8 > 0))`;
+
 export interface SeriesWeeksRow {
   lineId: number;
   itemId: number;
@@ -87,8 +91,7 @@ export function selectSeriesWeeks(
     tx,
     `with sold as (
        select m.line_id, w.item_id, w.location_id, w.week_start, w.units, coalesce(w.gap, 0) > 0 as is_gap,
-              (coalesce(w.feature, 0) > 0 or coalesce(w.display, 0) > 0 or w.price < 0.95 * w.regular_price
-                or exists (select from jsonb_each(w.mechanics) e where e.value::text::float8 > 0)) as is_promoted,
+              ${isPromoted} as is_promoted,
               row_number() over (partition by w.item_id, w.location_id order by w.week_start) as position
        from item_membership m
        join sales_week w on w.item_id = m.item_id and w.week_start >= m.valid_from and (m.valid_to is null or w.week_start < m.valid_to)
@@ -116,7 +119,7 @@ export function selectCategoryWeeks(tx: Tx, categoryId: number, lineId: number |
   return selectRows<WeekTotalRow>(
     tx,
     `select to_char(w.week_start, 'YYYY-MM-DD') as "weekStart", sum(w.units) as units,
-            bool_or(coalesce(w.feature, 0) > 0 or coalesce(w.display, 0) > 0 or w.price < 0.95 * w.regular_price) as "isPromoted"
+            bool_or(${isPromoted}) as "isPromoted"
      from sales_week w
      join item_membership m on m.item_id = w.item_id and w.week_start >= m.valid_from and (m.valid_to is null or w.week_start < m.valid_to)
      join product_line p on p.id = m.line_id

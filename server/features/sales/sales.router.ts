@@ -40,7 +40,8 @@ export function salesRouter({ database }: Deps): Router {
     demandRight(actor, 'import-sales', null);
     const file = await receive(takeFile, request, response);
     try {
-      const detail = await service.receiveFile(database, actor, { path: file.path, fileName: file.originalname });
+      const fileName = file.originalname.replaceAll('\u0000', '');
+      const detail = await service.receiveFile(database, actor, { path: file.path, fileName });
       response.status(201).json(detail);
     } finally {
       await rm(file.path, { force: true });

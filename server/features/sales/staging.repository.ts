@@ -5,6 +5,7 @@ import { from as copyFrom } from 'pg-copy-streams';
 import type { ImportTotals } from '../../../shared/contracts/sales.ts';
 import { execute, selectRow, selectRows, type Tx } from '../../lib/database.ts';
 import type { PlannedRow } from '../calendar/calendar.service.ts';
+import { toJsonText } from './json-text.ts';
 import type { FileItem, FileLocation } from './range-resolver.ts';
 import { stagedColumns } from './staging-file.ts';
 
@@ -50,13 +51,13 @@ export async function pourRows(
     `create temporary table import_item on commit drop as
      select position, id as item_id, code, name, "categoryId" as category_id, "lineId" as line_id, "lineName" as line_name, id is null as is_new
      from jsonb_to_recordset($items::jsonb) as i(position int, id int, code text, name text, "categoryId" int, "lineId" int, "lineName" text)`,
-    { items: JSON.stringify(items.map((item, position) => ({ ...item, position }))) },
+    { items: toJsonText(items.map((item, position) => ({ ...item, position }))) },
   );
   await execute(
     tx,
     `create temporary table import_location on commit drop as
      select position, id as location_id, code from jsonb_to_recordset($locations::jsonb) as l(position int, id int, code text)`,
-    { locations: JSON.stringify(locations.map((location, position) => ({ ...location, position }))) },
+    { locations: toJsonText(locations.map((location, position) => ({ ...location, position }))) },
   );
   await execute(tx, `analyze import_row, import_item, import_location`);
 }

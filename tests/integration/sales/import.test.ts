@@ -544,6 +544,17 @@ describe('a failure at the very end', () => {
   });
 });
 
+describe('a file with characters that a database can’t store', () => {
+  it('is read without them', async () => {
+    const { categoryId, itemCodes } = await makeRange(deps.database, { items: 1 });
+    const { importer } = await planIn(categoryId);
+    const text = `\uFEFFweek,item,units\n2026-W02,${itemCodes[0]}\u0000,3\nnever \u0000\ud800,${itemCodes[0]},4\n`;
+    const read = await importer.upload('wide.csv', Buffer.from(text, 'utf16le'));
+    expect(read).toMatchObject({ state: 'to-check', refusal: null, rowsRefused: 1 });
+    expect(read.findings.map(({ kind }) => kind)).toContain('week-unreadable');
+  });
+});
+
 describe('the same acceptance twice', () => {
   it('asked for at once has one effect; the other is told', async () => {
     const { categoryId, itemCodes } = await makeRange(deps.database, { items: 1 });
