@@ -12,14 +12,17 @@ export interface Database {
 }
 
 /** Dates come as `YYYY-MM-DD`, bigint and numeric as numbers: nothing stored here exceeds 2^53 or needs more than double precision. */
+const parsers: Partial<Record<number, (text: string) => unknown>> = {
+  [pg.types.builtins.DATE]: (text) => text,
+  [pg.types.builtins.INT8]: Number,
+  [pg.types.builtins.NUMERIC]: Number,
+  // date[]
+  1182: (text) => (text === '{}' ? [] : text.slice(1, -1).split(',')),
+};
+
 const types: pg.CustomTypesConfig = {
-  getTypeParser: ((oid: number, format?: 'text' | 'binary') => {
-    if (oid === pg.types.builtins.DATE) return (text: string) => text;
-    if (oid === pg.types.builtins.INT8 || oid === pg.types.builtins.NUMERIC) return Number;
-    // date[]
-    if (oid === 1182) return (text: string) => (text === '{}' ? [] : text.slice(1, -1).split(','));
-    return pg.types.getTypeParser(oid, format) as unknown;
-  }) as typeof pg.types.getTypeParser,
+  getTypeParser: ((oid: Parameters<typeof pg.types.getTypeParser>[0], format?: 'text' | 'binary') =>
+    parsers[oid] ?? (pg.types.getTypeParser(oid, format) as unknown)) as typeof pg.types.getTypeParser,
 };
 
 /** Opens the pools; connects lazily. */

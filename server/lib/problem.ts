@@ -1,6 +1,6 @@
 import type { ErrorRequestHandler } from 'express';
 import { DatabaseError, ConnectionError } from 'sequelize';
-import { z } from 'zod';
+import type { z } from 'zod';
 import type { Problem, ProblemDetail } from '../../shared/contracts/problem.ts';
 import { problems, type ProblemType } from '../../shared/problems.ts';
 
@@ -62,7 +62,7 @@ export const problemHandler: ErrorRequestHandler = (error: unknown, request, res
   response
     .status(problems[problem.type].status)
     .type('application/problem+json')
-    .send(JSON.stringify(describeProblem(problem, String(request.id))));
+    .send(JSON.stringify(describeProblem(problem, typeof request.id === 'string' ? request.id : '')));
 };
 
 function toProblem(error: unknown): ProblemError {

@@ -21,7 +21,7 @@ export const NewOverride = z.object({
   lastWeek: WeekStart,
   operation: OverrideOperation,
   /** Units for set to and add, a factor for scale by, null for clear. */
-  value: z.number().finite().nullable(),
+  value: z.number().nullable(),
   reasonId: Id.nullable(),
   note: Note.nullable(),
 });
