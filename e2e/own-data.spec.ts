@@ -35,13 +35,13 @@ test('an empty installation is set up through the page and brings its own sales 
       .or(dialog.getByLabel('Name', { exact: true }))
       .fill('Nele Ruiz');
     await dialog.getByLabel('E-mail').fill('nele@own.example');
-    await dialog.getByLabel('Role 1').selectOption({ label: 'planner' });
-    await dialog.getByLabel('for 1').selectOption({ label: 'Juice' });
+    await dialog.getByRole('combobox', { name: 'Role 1' }).selectOption({ label: 'planner' });
+    await dialog.getByRole('combobox', { name: 'for 1' }).selectOption({ label: 'Juice' });
     await dialog.getByRole('button', { name: 'Add a role' }).click();
-    await dialog.getByLabel('Role 2').selectOption({ label: 'category lead' });
-    await dialog.getByLabel('for 2').selectOption({ label: 'Juice' });
+    await dialog.getByRole('combobox', { name: 'Role 2' }).selectOption({ label: 'category lead' });
+    await dialog.getByRole('combobox', { name: 'for 2' }).selectOption({ label: 'Juice' });
     await dialog.getByRole('button', { name: 'Add a role' }).click();
-    await dialog.getByLabel('Role 3').selectOption({ label: 'finance' });
+    await dialog.getByRole('combobox', { name: 'Role 3' }).selectOption({ label: 'finance' });
     await dialog.getByRole('button', { name: 'Make the link' }).click();
     return page.getByLabel('One-time link').inputValue();
   });
@@ -53,8 +53,7 @@ test('an empty installation is set up through the page and brings its own sales 
     await page.getByLabel('Password', { exact: true }).fill(password);
     await page.getByRole('button', { name: 'Begin' }).click();
     await bringIn(page, sales);
-    await page.getByLabel('Category of all rows').selectOption({ label: 'Juice' });
-    await page.getByRole('button', { name: /read.*again/i }).click();
+    await expect(page.getByLabel('Category of all rows')).toHaveValue(/\d+/);
     await page.getByLabel('Yes, make them').check({ timeout: 60_000 });
     await acceptRows(page);
   });
