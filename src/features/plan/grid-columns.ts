@@ -89,6 +89,8 @@ export interface Pennant {
   count: number;
   firstWeek: string;
   lastWeek: string;
+  /** Position where the next pennant of its lane begins, or one past the last column: how far its name may reach. */
+  freeUntil: number;
 }
 
 /**
@@ -112,7 +114,7 @@ export function placePennants(
       last: position.get(promotion.lastWeek > lastShown ? lastShown : promotion.lastWeek) ?? columns.length - 1,
     }))
     .sort((a, b) => a.first - b.first || b.last - a.last || a.name.localeCompare(b.name));
-  const merged: Omit<Pennant, 'lane'>[] = [];
+  const merged: Omit<Pennant, 'lane' | 'freeUntil'>[] = [];
   for (const { name, first, last, firstWeek, lastWeek } of shown) {
     const same = merged.find((each) => each.name === name && first <= each.last + 1);
     if (same) {
@@ -131,14 +133,16 @@ export function placePennants(
       continue;
     }
     lastInLane[lane] = each.last;
-    pennants.push({ ...each, lane });
+    const before = pennants.findLast((held) => held.lane === lane);
+    if (before) before.freeUntil = each.first;
+    pennants.push({ ...each, lane, freeUntil: columns.length });
   }
   return { pennants, hidden };
 }
 
-/** Width in px of a column whose longest figure is `figures` (formatted text): the figure plus its margins and room for a mark, at least 47. */
+/** Width in px of a column whose longest figure is `figures` (formatted text): the figure plus its margins and room for a mark, at least 48. */
 export function columnWidth(figures: string): number {
   let width = 0;
-  for (const character of figures) width += /\d/.test(character) ? 7.5 : 3.6;
-  return Math.max(47, Math.ceil(width) + 15);
+  for (const character of figures) width += /\d/.test(character) ? 7.9 : 4;
+  return Math.max(48, Math.ceil(width) + 16);
 }

@@ -44,6 +44,7 @@ export function readPageState(search: URLSearchParams): PageState {
 /** The address with some of it changed; what is as at first is left out. */
 export function writePageState(search: URLSearchParams, change: Partial<PageState>): URLSearchParams {
   const next = new URLSearchParams(search);
+  if (change.cell) next.delete('item');
   const put = (name: string, value: string | null) => {
     if (value === null) next.delete(name);
     else next.set(name, value);

@@ -1,21 +1,34 @@
 import type { TFunction } from 'i18next';
 import { useTranslation } from 'react-i18next';
 import type { Finding } from '../../../../shared/contracts/lines.ts';
+import { isIsoDate, weekLabel } from '../../../../shared/domain/weeks.ts';
 
 /** Findings that change how far a number can be trusted stand first; the rest is detail of the data. */
 const weighty = new Set(['simple-average', 'too-little-history', 'outside-seen-prices', 'outside-seen-promotions']);
 
-function describeFinding(t: TFunction<'plan'>, finding: Finding): string {
-  const place = [finding.item, finding.location].filter(Boolean).join(', ');
+function describeFinding(t: TFunction<'plan'>, finding: Finding, itemNames: ReadonlyMap<string, string>): string {
+  const item = finding.item === undefined ? undefined : (itemNames.get(finding.item) ?? finding.item);
+  const place = [item, finding.location].filter(Boolean).join(', ');
+  const week = finding.values?.week;
   const words = t(`finding.${finding.kind}`, {
     ...finding.values,
+    ...(typeof week === 'string' && isIsoDate(week) ? { week: weekLabel(week) } : {}),
     defaultValue: t('finding.other', { kind: finding.kind.replaceAll('-', ' ') }),
   });
   return place === '' ? words : `${place}: ${words}`;
 }
 
+const noNames: ReadonlyMap<string, string> = new Map();
+
 /** What the forecast of a line has to say about itself. */
-export function FindingsNote({ findings, modelPath }: { findings: readonly Finding[]; modelPath?: string }) {
+export function FindingsNote({
+  findings,
+  itemNames = noNames,
+}: {
+  findings: readonly Finding[];
+  /** Names by code. */
+  itemNames?: ReadonlyMap<string, string>;
+}) {
   const { t } = useTranslation('plan');
   if (findings.length === 0) return null;
   const first = findings.filter(({ kind }) => weighty.has(kind));
@@ -26,7 +39,7 @@ export function FindingsNote({ findings, modelPath }: { findings: readonly Findi
     <div className="text-small">
       {first.slice(0, 3).map((finding, index) => (
         <p key={index} className="border-l-2 border-turmeric pl-3">
-          <b className="text-turmeric">{t('finding.caution')}</b> {describeFinding(t, finding)}
+          <b className="text-turmeric">{t('finding.caution')}</b> {describeFinding(t, finding, itemNames)}
         </p>
       ))}
       {findings.length > Math.min(3, first.length) && (
@@ -34,23 +47,18 @@ export function FindingsNote({ findings, modelPath }: { findings: readonly Findi
           <summary className="cursor-pointer text-soft">{t('finding.all', { count: findings.length })}</summary>
           <ul className="mt-1 max-h-40 overflow-y-auto pl-4">
             {first.slice(3, 20).map((finding, index) => (
-              <li key={index}>{describeFinding(t, finding)}</li>
+              <li key={index}>{describeFinding(t, finding, itemNames)}</li>
             ))}
             {[...byKind.values()].map((same) => (
               <li key={same[0]?.kind}>
                 {same
                   .slice(0, 2)
-                  .map((finding) => describeFinding(t, finding))
+                  .map((finding) => describeFinding(t, finding, itemNames))
                   .join(' · ')}
                 {same.length > 2 && ` · ${t('finding.more', { count: same.length - 2 })}`}
               </li>
             ))}
           </ul>
-          {modelPath && (
-            <a className="act mt-1 inline-block" href={modelPath}>
-              {t('tools.model')}
-            </a>
-          )}
         </details>
       )}
     </div>

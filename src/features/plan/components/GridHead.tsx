@@ -111,6 +111,10 @@ export const GridHead = memo(function GridHead(props: GridHeadProps) {
             const left = lefts[pennant.first] ?? 0;
             const width = Math.max(24, (lefts[pennant.last] ?? 0) + widthOf(pennant.last) - left - 2);
             const point = 8;
+            const free =
+              (pennant.freeUntil < columns.length ? (lefts[pennant.freeUntil] ?? 0) : Infinity) - left - width - 4;
+            const nameWidth = pennant.name.length * 5.9 + 4;
+            const isBeside = nameWidth > width - 14 && nameWidth < free;
             const words = `${pennant.name}, ${formatDate(pennant.firstWeek)}`;
             return (
               <li
@@ -128,7 +132,7 @@ export const GridHead = memo(function GridHead(props: GridHeadProps) {
                   />
                   <path d="M1 .5V17" stroke="var(--turmeric)" strokeWidth="1.6" />
                 </svg>
-                <span>{pennant.name}</span>
+                <span style={isBeside ? { left: width + 4, width: nameWidth } : undefined}>{pennant.name}</span>
               </li>
             );
           })}

@@ -54,7 +54,7 @@ export function LineHeading({ plan, hasEdits }: { plan: LinePlan; hasEdits: bool
   }
   return (
     <header className="flex flex-wrap items-start justify-between gap-x-7 gap-y-1 pb-2">
-      <div className="min-w-0 max-w-[640px] flex-1">
+      <div className="min-w-0 max-w-[760px] flex-1">
         <h1>{plan.line.name}</h1>
         <p className="mt-1 text-small text-soft">
           {sentences.join(' ')}

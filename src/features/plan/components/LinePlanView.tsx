@@ -86,6 +86,7 @@ export function LinePlanView({
   const isWide = useWideScreen();
   const lineId = plan.line.id;
   useCategoryInAddress(plan.category.id);
+  useItemInAddress(plan, changePage);
 
   const { edits, wereRestored, add, undo, redo, discard, replace } = useLineEdits(
     `fairweek-edits-${person.id}-${lineId}`,
@@ -167,6 +168,8 @@ export function LinePlanView({
     },
     [plan.items, plan.locations, t],
   );
+
+  const itemNames = useMemo(() => new Map(plan.items.map(({ code, name }) => [code, name])), [plan.items]);
 
   const first = defaultWindow(plan);
   const from = page.from ?? first?.from ?? '';
@@ -625,7 +628,7 @@ export function LinePlanView({
             )}
             {plan.findings.length > 0 && (
               <div className="mb-1">
-                <FindingsNote findings={plan.findings} />
+                <FindingsNote findings={plan.findings} itemNames={itemNames} />
               </div>
             )}
             {isReviewed && (
@@ -732,8 +735,8 @@ export function LinePlanView({
               ) : (
                 <GridKey
                   note={
-                    isBehind && hasEdits
-                      ? t('edits.othersSaved')
+                    hasEdits && edits.baseVersion !== null && edits.baseVersion < shownNumber
+                      ? t('edits.othersSaved', { author: plan.version?.author, number: shownNumber })
                       : plan.run && t('estimates', { week: weekLabel(plan.run.salesTo) })
                   }
                 />
@@ -830,4 +833,17 @@ function useCategoryInAddress(categoryId: number): void {
       { replace: true },
     );
   }, [isOther, categoryId, setSearch]);
+}
+
+/** `?item=7`, as the Find box links, selects that item's first planned week. */
+function useItemInAddress(plan: LinePlan, changePage: (change: Partial<PageState>) => void): void {
+  const [search] = useSearchParams();
+  const asked = search.get('item');
+  const row = plan.items.some(({ id }) => String(id) === asked) ? `i${asked}` : null;
+  const weekStart = plan.planFirstWeek;
+  useEffect(() => {
+    if (row !== null && weekStart !== null) {
+      changePage({ down: 'items', locationId: null, cell: { row, weekStart }, head: null });
+    }
+  }, [row, weekStart, changePage]);
 }

@@ -92,7 +92,12 @@ function PlannedCell({ plan, row, column, figures, lineFigures, pending, describ
   const sum = (values: (number | null | undefined)[]) => values.reduce<number>((total, each) => total + (each ?? 0), 0);
   const model = figures.model[week] ?? 0;
   const held = figures.plan[week] ?? 0;
-  const base = sum(series.map((each) => each.base[week]));
+  // The model is rounded to unit steps with the remainder carried on, the base isn't: less than a step per series is rounding, not uplift.
+  const unitSteps = new Map(plan.items.map(({ id, unitStep }) => [id, unitStep]));
+  const rounding = sum(series.map(({ itemId }) => unitSteps.get(itemId)));
+  const unrounded = sum(series.map((each) => each.base[week]));
+  const isPromoted = findPromotions(plan, row, column.weekStart).length > 0;
+  const base = !isPromoted && Math.abs(model - unrounded) <= rounding ? model : roundToShow(unrounded);
   const uplift = model - base;
   const moved = held - model;
   const lastYears = series.map((each) => each.lastYear[week]);
@@ -274,6 +279,23 @@ function PlannedCell({ plan, row, column, figures, lineFigures, pending, describ
   );
 }
 
+/** The base to whole units, or to a decimal where there are few. */
+function roundToShow(units: number): number {
+  return Math.abs(units) < 10 ? Math.round(units * 10) / 10 : Math.round(units);
+}
+
+function findPromotions(plan: LinePlan, row: GridRow, weekStart: string) {
+  const series = row.seriesIndexes.flatMap((index) => plan.series[index] ?? []);
+  return plan.promotions.filter(
+    (promotion) =>
+      promotion.firstWeek <= weekStart &&
+      promotion.lastWeek >= weekStart &&
+      series.some(
+        ({ itemId, locationId }) => promotion.itemIds.includes(itemId) && promotion.locationIds.includes(locationId),
+      ),
+  );
+}
+
 function lockVersion(plan: LinePlan, weekStart: string): number | string {
   return plan.locks.find(({ firstWeek, lastWeek }) => weekStart >= firstWeek && weekStart <= lastWeek)?.version ?? '–';
 }
@@ -354,15 +376,7 @@ function Promotions({
   uplift: number | null;
 }) {
   const { t } = useTranslation('plan');
-  const series = row.seriesIndexes.flatMap((index) => plan.series[index] ?? []);
-  const promotions = plan.promotions.filter(
-    (promotion) =>
-      promotion.firstWeek <= weekStart &&
-      promotion.lastWeek >= weekStart &&
-      series.some(
-        ({ itemId, locationId }) => promotion.itemIds.includes(itemId) && promotion.locationIds.includes(locationId),
-      ),
-  );
+  const promotions = findPromotions(plan, row, weekStart);
   if (promotions.length === 0) return null;
   return (
     <>
