@@ -44,19 +44,23 @@ export function receiveFile(
   return inTransaction(database, async (tx) => {
     const stored = await storeFile(tx, file.path, file.fileName);
     const id = await imports.insertImport(tx, { fileId: stored.id, sha256: stored.sha256, actorId: actor.id });
-    await enqueueReading(tx, actor, id);
+    const job = await enqueueReading(tx, actor, id);
     await writeAudit(tx, {
       actor,
       action: 'import.receive',
       subject: `import:${id}`,
       new: { fileName: file.fileName, sha256: stored.sha256, sizeBytes: stored.sizeBytes },
     });
-    return describeImport(tx, actor, await demandImport(tx, actor, id));
+    return describeImport(tx, actor, await demandImport(tx, actor, id), job);
   });
 }
 
 export function readImport(database: Database, actor: Actor, id: number): Promise<ImportDetail> {
-  return inTransaction(database, async (tx) => describeImport(tx, actor, await demandImport(tx, actor, id)));
+  return inTransaction(database, async (tx) => {
+    // In this order a job that ends in between shows as active once more, never as an import that waits for nothing.
+    const activeJob = await findActiveJob(tx, `import:${id}`);
+    return describeImport(tx, actor, await demandImport(tx, actor, id), activeJob);
+  });
 }
 
 /** Has the file read anew with a mapping corrected by hand. */
@@ -72,8 +76,8 @@ export function changeMapping(
     if (stored.state !== 'to-check' && stored.state !== 'refused') throw wrongState(stored);
     if (mapping.categoryId !== null && !actor.isDataSteward) demandRight(actor, 'import-sales', mapping.categoryId);
     await imports.setMapping(tx, id, mapping);
-    await enqueueReading(tx, actor, id);
-    return describeImport(tx, actor, await demandImport(tx, actor, id));
+    const job = await enqueueReading(tx, actor, id);
+    return describeImport(tx, actor, await demandImport(tx, actor, id), job);
   });
 }
 
@@ -150,7 +154,12 @@ export function readRefusedRows(
   });
 }
 
-async function describeImport(tx: Tx, actor: Actor, stored: StoredImport): Promise<ImportDetail> {
+async function describeImport(
+  tx: Tx,
+  actor: Actor,
+  stored: StoredImport,
+  activeJob: Job | null,
+): Promise<ImportDetail> {
   const isWhole = seesAllOf(actor, stored);
   const { totals, preview } = stored;
   const mayChange = hasAuthority(actor, stored);
@@ -176,7 +185,7 @@ async function describeImport(tx: Tx, actor: Actor, stored: StoredImport): Promi
         : [],
     mayAccept: stored.state === 'to-check' && mayChange,
     mayWithdraw: stored.state === 'accepted' && mayChange,
-    activeJob: await findActiveJob(tx, `import:${stored.id}`),
+    activeJob,
   };
 }
 
@@ -200,8 +209,8 @@ function toSummary(stored: StoredImport): ImportSummary {
   };
 }
 
-async function enqueueReading(tx: Tx, actor: Actor, id: number): Promise<void> {
-  await enqueueJob(tx, actor, {
+function enqueueReading(tx: Tx, actor: Actor, id: number): Promise<Job> {
+  return enqueueJob(tx, actor, {
     kind: 'import.read',
     subject: `import:${id}`,
     categoryId: null,
