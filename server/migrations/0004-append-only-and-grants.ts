@@ -1,6 +1,7 @@
 import type { Migration } from '../lib/migrate.ts';
 
-const appendOnly = [
+/** Tables whose rows are never changed or removed. */
+export const appendOnlyTables = [
   'sales_entry',
   'sales_revision',
   'calendar_revision',
@@ -34,7 +35,7 @@ create function refuse_change() returns trigger language plpgsql as $$
 begin
   raise exception 'rows of % are never changed or removed', tg_table_name using errcode = 'insufficient_privilege';
 end $$;
-${appendOnly
+${appendOnlyTables
   .map(
     (table) => `
 create trigger ${table}_append_only before update or delete on ${table} for each row execute function refuse_change();
@@ -48,7 +49,7 @@ begin
     grant usage on schema public to fairweek_application;
     grant select, insert, update, delete on all tables in schema public to fairweek_application;
     grant usage, select on all sequences in schema public to fairweek_application;
-    revoke update, delete, truncate on ${appendOnly.join(', ')} from fairweek_application;
+    revoke update, delete, truncate on ${appendOnlyTables.join(', ')} from fairweek_application;
     revoke delete, truncate on category, product_line, item, location, "import" from fairweek_application;
     revoke insert, update, delete on applied_migration from fairweek_application;
   end if;
