@@ -1,19 +1,8 @@
-import { buildLinePanel, switchOffComingPromotions, type LinePanel } from './features/line-panel.ts';
-import { reportFit } from './fit/fit-report.ts';
+import { buildLinePanel, type LinePanel } from './features/line-panel.ts';
 import { isIntermittent } from './fit/intermittent.ts';
-import { keepFit, type KeptFit } from './fit/kept-fit.ts';
-import { slopesBySeries } from './fit/shrunken-slopes.ts';
-import { buildColumnSet, fitLineModel, type LineModel } from './fit/line-model.ts';
-import { computeRecentLevels, type CarryRule } from './fit/recent-level.ts';
-import { prepareComingColumns, type ComingColumns } from './prediction/coming-columns.ts';
-import { predictSeries, type PredictedSeries } from './prediction/predicted-parts.ts';
-import { computeSmearing } from './prediction/smearing.ts';
+import { forecastByRegression, type SearchChoice, type SeriesCentre } from './prediction/forecast-by-regression.ts';
 import { forecastIntermittent, forecastSimpleAverage, type PlainForecast } from './prediction/plain-forecasts.ts';
-import { computeWeekInfluences, drawCoefficientDeviations } from './ranges/coefficient-draws.ts';
 import { summarisePaths, type UnitPaths } from './ranges/path-quantiles.ts';
-import { createNormal, createRandom } from './ranges/random.ts';
-import { drawResidualPaths } from './ranges/residual-paths.ts';
-import type { Specification } from './search/specification.ts';
 import type {
   Finding,
   LineFit,
@@ -29,36 +18,6 @@ const PATHS = 1000;
 const FEWEST_WEEKS_OF_SERIES = 6;
 const FEWEST_ROWS_OF_LINE = 20;
 const FEWEST_WEEKS_OF_LINE = 10;
-const TIMES_LARGEST_SEEN = 3;
-
-export const plainSpecification: Specification = {
-  splitPrice: false,
-  neighbourPrice: true,
-  neighbourPromotion: true,
-  attraction: true,
-  around: false,
-  fourierPairs: 0,
-  holidays: true,
-  trend: false,
-  halfLifeWeeks: 52,
-};
-export const plainCarry: CarryRule = { halfLifeWeeks: 6, priorWeeks: 4, decayPerWeek: 0.95 };
-
-/** What a caller may fix instead of leaving it to the arithmetic. */
-export interface ForecastChoice {
-  specification?: Specification;
-  carry?: CarryRule;
-}
-
-/** Forecast of one series before its ranges: means, base and parts, per week of the horizon. */
-interface SeriesCentre {
-  method: SeriesMethod;
-  mean: Float64Array;
-  median: Float64Array | null;
-  base: Float64Array;
-  marks: string[][];
-  parts: Record<string, Float64Array>;
-}
 
 /**
  * Forecasts one product line: fits it on the sales up to the origin, forecasts every series over the horizon from the plan, and
@@ -66,7 +25,7 @@ interface SeriesCentre {
  * `fit.seconds` is 0 and whoever times the call fills it in.
  * Throws RangeError for an empty line or a horizon below 1.
  */
-export function forecastLine(input: LineInput, choice: ForecastChoice = {}): LineForecast {
+export function forecastLine(input: LineInput, choice: SearchChoice = {}): LineForecast {
   if (input.series.length === 0) throw new RangeError('a line without series has nothing to forecast');
   if (!(Number.isInteger(input.horizon) && input.horizon > 0))
     throw new RangeError('the horizon must be at least 1 week');
@@ -140,114 +99,6 @@ function restrictToRegression(panel: LinePanel, methods: readonly SeriesMethod[]
     return one;
   });
   return { ...panel, series, hasZeros };
-}
-
-function forecastByRegression(
-  panel: LinePanel,
-  input: LineInput,
-  choice: ForecastChoice,
-  centres: SeriesCentre[],
-  paths: UnitPaths,
-  findings: Finding[],
-): LineFit {
-  const specification = choice.specification ?? plainSpecification;
-  const carry = choice.carry ?? plainCarry;
-  const lastWeek = panel.pastWeeks - 1;
-  const columnSet = buildColumnSet(panel, input.holidays, specification);
-  const model = fitLineModel(panel, columnSet, specification, lastWeek);
-  const kept = keepFit(panel, model.estimate, model.target, lastWeek);
-  const residuals = residualsByWeek(panel, kept);
-  const planned = prepareComingColumns(panel, input.holidays, specification, model);
-  const unpromoted = prepareComingColumns(
-    switchOffComingPromotions(panel),
-    input.holidays,
-    specification,
-    model,
-  ).columns;
-  const levels = computeRecentLevels(panel, residuals, lastWeek, carry);
-  const smearing = panel.hasZeros ? { promoted: 1, other: 1 } : computeSmearing(panel, residuals);
-  const predicted = new Array<PredictedSeries>(panel.series.length);
-  panel.series.forEach((series, s) => {
-    if (series.usedWeeks === 0) return;
-    const predict = (columns: ComingColumns['columns'], isPromoted: boolean): PredictedSeries =>
-      predictSeries(panel, s, columns, kept.slopes[s]!, kept.levels[s]!, model.estimate.moments[s]!, (h) => {
-        const useful = isPromoted && series.isPromoted[panel.pastWeeks + h] ? levels.promoted[s]! : levels.other[s]!;
-        return useful * carry.decayPerWeek ** h;
-      });
-    const plan = predict(planned.columns, true);
-    const base = predict(unpromoted, false);
-    predicted[s] = plan;
-    const mean = plan.linear.map((value, h) => {
-      const factor = series.isPromoted[panel.pastWeeks + h] ? smearing.promoted : smearing.other;
-      return Math.exp(value) * factor;
-    });
-    centres[s] = {
-      method: panel.hasZeros ? 'poisson' : 'regression',
-      mean,
-      median: panel.hasZeros ? null : plan.linear.map(Math.exp),
-      base: base.linear.map((value) => Math.exp(value) * smearing.other),
-      marks: planned.marks[s]!.map((cell, h) =>
-        mean[h]! > TIMES_LARGEST_SEEN * series.largestUnits ? [...cell, 'above-three-times-largest'] : cell,
-      ),
-      parts: plan.parts,
-    };
-  });
-  const influences = computeWeekInfluences(model.estimate, kept);
-  simulatePaths(panel, model, planned.columns, predicted, residuals, influences, input.seed, paths);
-  findings.push(...columnSet.findings);
-  for (const { column, item, location } of model.estimate.wrongSigns) {
-    findings.push({
-      kind: item === null && location === null ? 'wrong-sign-line' : 'wrong-sign-own',
-      ...(item === null ? {} : { item }),
-      ...(location === null ? {} : { location }),
-      values: { column },
-    });
-  }
-  return reportFit(panel, specification, model, kept, influences, [], findings);
-}
-
-/** Leave-one-out residuals per series and week in ln units; for a Poisson fit ln of (units ÷ mean), of the working residual. */
-function residualsByWeek(panel: LinePanel, kept: KeptFit): Float64Array[] {
-  const residuals = panel.series.map(() => new Float64Array(panel.pastWeeks).fill(Number.NaN));
-  kept.rows.forEach(({ series, week }, i) => {
-    const residual = kept.leaveOneOut[i]!;
-    residuals[series]![week] = panel.hasZeros ? Math.log(Math.max(1 + residual, 0.05)) : residual;
-  });
-  return residuals;
-}
-
-function simulatePaths(
-  panel: LinePanel,
-  model: LineModel,
-  columns: ComingColumns['columns'],
-  predicted: readonly PredictedSeries[],
-  residuals: readonly Float64Array[],
-  influences: readonly Float64Array[],
-  seed: number,
-  { values, paths }: UnitPaths,
-): void {
-  const { layout, moments } = model.estimate;
-  const { horizon, pastWeeks } = panel;
-  const count = panel.series.length;
-  const drawn = drawResidualPaths(panel, residuals, paths, seed);
-  const drawNormal = createNormal(createRandom(seed + 1));
-  for (let path = 0; path < paths; path++) {
-    const slopes = slopesBySeries(panel, layout, drawCoefficientDeviations(influences, layout.size, drawNormal));
-    for (let s = 0; s < count; s++) {
-      const plan = predicted[s];
-      if (!plan) continue;
-      const own = slopes[s]!;
-      const { columnMeans } = moments[s]!;
-      for (let h = 0; h < horizon; h++) {
-        const at = (path * count + s) * horizon + h;
-        let deviation = drawn[at]!;
-        for (let k = 0; k < own.length; k++) {
-          deviation += own[k]! * (columns[k]!.values[s]![pastWeeks + h]! - columnMeans[k]!);
-        }
-        values[at] = Math.exp(plan.linear[h]! + deviation);
-      }
-    }
-  }
 }
 
 function plainCentre(panel: LinePanel, method: SeriesMethod, plain: PlainForecast): SeriesCentre {

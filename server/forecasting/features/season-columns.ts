@@ -3,6 +3,8 @@ import type { HolidayWeek } from '../types.ts';
 import type { Column } from './column.ts';
 import type { LinePanel } from './line-panel.ts';
 
+export const TREND = 'trend';
+
 const DAYS_IN_YEAR = 365.25;
 const WEEKS_IN_YEAR = DAYS_IN_YEAR / 7;
 const TREND_DAMPING = 0.9;
@@ -20,18 +22,18 @@ export function buildSeason(panel: LinePanel, pairs: number): Column[] {
   return columns;
 }
 
-/** Years since the axis' start; after the origin each step is 0.9 of the one before (damped). */
-export function buildTrend(panel: LinePanel): Column {
+/** Years since the axis' start; after `lastWeek` each step is 0.9 of the one before (damped). */
+export function buildTrend(panel: LinePanel, lastWeek: number): Column {
   let at = 0;
   let step = 1 / WEEKS_IN_YEAR;
   const values = Float64Array.from(panel.weeks, (_, t) => {
     if (t > 0) {
-      if (t >= panel.pastWeeks) step *= TREND_DAMPING;
+      if (t > lastWeek) step *= TREND_DAMPING;
       at += step;
     }
     return at;
   });
-  return shareColumn(panel, 'trend', 'trend', 0.3, values);
+  return shareColumn(panel, TREND, 'trend', 0.3, values);
 }
 
 /**

@@ -1,34 +1,20 @@
 import { countWeeksAwayFromMedian } from '../fit/slope-layout.ts';
-import type { Column, ColumnGroup } from './column.ts';
+import type { Column } from './column.ts';
 import type { LinePanel } from './line-panel.ts';
 
-const TOLERANCE = 0.02;
 const WEEKS_FOR_OWN_RANGE = 4;
 
-const MARK_OF_GROUP: Partial<Record<ColumnGroup, string>> = {
-  price: 'outside-seen-price',
-  promotion: 'outside-seen-promotion',
-};
-
-export interface HeldColumns {
-  columns: Column[];
-  /** Per series, per week of the horizon. */
-  marks: string[][][];
-}
-
 /**
- * Holds the coming weeks' price and promotion columns at the edge of what was seen and marks those cells. A series whose column
- * moved in at least four weeks is held to its own range; another one, which borrows the line's slope, to its usual value plus the
- * moves seen anywhere in the line. The mark speaks of the series' own range.
+ * Holds the coming weeks' columns with slopes of their own at the edge of what was seen. A series whose column moved in at least four
+ * weeks is held to its own range; another one, which borrows the line's slope, to its usual value plus the moves seen anywhere in
+ * the line.
  */
-export function holdAtSeenRange(panel: LinePanel, columns: readonly Column[]): HeldColumns {
-  const marks = panel.series.map(() => Array.from({ length: panel.horizon }, (): string[] => []));
-  const held = columns.map((column) => {
+export function holdAtSeenRange(panel: LinePanel, columns: readonly Column[]): Column[] {
+  return columns.map((column) => {
     if (!column.hasOwnSlopes) return column;
     const seen = panel.series.map((series, s) => describeSeen(column.values[s]!, series.isUsed, panel.pastWeeks));
     const lineLow = Math.min(0, ...seen.map((one) => one.low - one.median));
     const lineHigh = Math.max(0, ...seen.map((one) => one.high - one.median));
-    const mark = MARK_OF_GROUP[column.group];
     const values = panel.series.map((_, s) => {
       const own = column.values[s]!;
       const { low, high, median, moved, rows } = seen[s]!;
@@ -36,20 +22,10 @@ export function holdAtSeenRange(panel: LinePanel, columns: readonly Column[]): H
       const isOwn = moved >= WEEKS_FOR_OWN_RANGE;
       const floor = isOwn ? low : Math.min(low, median + lineLow);
       const ceiling = isOwn ? high : Math.max(high, median + lineHigh);
-      const result = own.slice();
-      for (let t = panel.pastWeeks; t < own.length; t++) {
-        const value = own[t]!;
-        if (mark && (value < low - TOLERANCE || value > high + TOLERANCE)) {
-          const cell = marks[s]![t - panel.pastWeeks]!;
-          if (!cell.includes(mark)) cell.push(mark);
-        }
-        result[t] = Math.min(ceiling, Math.max(floor, value));
-      }
-      return result;
+      return own.map((value, t) => (t < panel.pastWeeks ? value : Math.min(ceiling, Math.max(floor, value))));
     });
     return { ...column, values };
   });
-  return { columns: held, marks };
 }
 
 function describeSeen(

@@ -1,21 +1,23 @@
 import type { LinePanel } from '../features/line-panel.ts';
-import { nameSpecification, type Specification } from '../search/specification.ts';
+import type { RolledCandidate } from '../search/roll-candidate.ts';
 import type { Finding, FittedCoefficient, LineFit } from '../types.ts';
 import type { KeptFit } from './kept-fit.ts';
 import type { LineModel } from './line-model.ts';
+import type { CarryRule } from './recent-level.ts';
 
 const NORMAL_97_5 = 1.959963984540054;
 
 /** What is kept and shown of a fit: the line's slopes with their errors clustered by week, and how well the rows are met. */
 export function reportFit(
   panel: LinePanel,
-  specification: Specification,
-  model: LineModel,
+  averaged: readonly RolledCandidate[],
+  carry: CarryRule,
   kept: KeptFit,
   influences: readonly Float64Array[],
   scores: LineFit['scores'],
   findings: readonly Finding[],
 ): LineFit {
+  const { specification, model } = averaged[0]!;
   const columns = model.columns;
   const coefficients = columns.map((column, k): FittedCoefficient => {
     const estimate = kept.coefficients[k]!;
@@ -32,7 +34,14 @@ export function reportFit(
   const { squares, total, weightSum, logLikelihood } = describeRows(model, kept);
   const parameters = kept.leverages.reduce((sum, leverage) => sum + leverage, 0);
   return {
-    specification: { name: nameSpecification(specification), isPoisson: panel.hasZeros, ...specification },
+    specification: {
+      name: averaged[0]!.name,
+      ...specification,
+      halfLifeWeeks: Number.isFinite(specification.halfLifeWeeks) ? specification.halfLifeWeeks : null,
+      isPoisson: panel.hasZeros,
+      averagedWith: averaged.slice(1).map((candidate) => candidate.name),
+      carry,
+    },
     coefficients,
     rows: kept.rows.length,
     rank: kept.rank,

@@ -51,12 +51,13 @@ export function estimateLine(
   columns: readonly Column[],
   { target, rowWeights }: FitTarget,
   lastWeek: number,
+  spread: number,
   given?: LineNoise,
 ): LineEstimate {
   const layout = layOutSlopes(panel, columns, lastWeek);
   const moments = computeSeriesMoments(panel, columns, target, rowWeights, lastWeek);
   const noise = given ?? estimateNoise(panel, layout, moments, target, lastWeek);
-  const penalties = penaltiesOf(layout, noise.components);
+  const penalties = penaltiesOf(layout, noise.components, spread);
   return holdSigns(panel, layout, moments, noise, penalties);
 }
 

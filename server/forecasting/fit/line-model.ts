@@ -9,7 +9,7 @@ import {
   buildNeighbourPromotion,
 } from '../features/neighbour-columns.ts';
 import { buildOwnColumns } from '../features/own-columns.ts';
-import { buildHolidays, buildSeason, buildTrend } from '../features/season-columns.ts';
+import { buildHolidays, buildSeason, buildTrend, TREND } from '../features/season-columns.ts';
 import type { Specification } from '../search/specification.ts';
 import type { Finding, HolidayWeek } from '../types.ts';
 import { estimateLine, linearPart, type FitTarget, type LineEstimate, type LineNoise } from './line-estimate.ts';
@@ -17,6 +17,7 @@ import { buildLogTarget } from './log-target.ts';
 import { buildPoissonTarget } from './poisson-target.ts';
 
 const POISSON_ROUNDS = 12;
+const POISSON_ROUNDS_FROM_START = 3;
 const POISSON_TOLERANCE = 1e-4;
 
 /** Columns of a specification before the attraction of the neighbours, which takes a fit of its own. */
@@ -34,7 +35,10 @@ export function buildColumnSet(
   holidays: readonly HolidayWeek[],
   specification: Specification,
 ): ColumnSet {
-  const own = dropUnusableColumns(panel, buildOwnColumns(panel, specification.splitPrice));
+  const own = dropUnusableColumns(
+    panel,
+    buildOwnColumns(panel, specification.splitPrice, specification.advertisedPrice),
+  );
   const further = buildFurtherColumns(panel, holidays, specification);
   const all = dropUnusableColumns(panel, [...own.kept, ...further]);
   return { own: own.kept, further: all.kept.filter((column) => !own.kept.includes(column)), findings: own.findings };
@@ -52,7 +56,7 @@ function buildFurtherColumns(
   if (specification.around) further.push(...buildAroundColumns(panel));
   further.push(...buildSeason(panel, specification.fourierPairs));
   if (specification.holidays) further.push(...buildHolidays(panel, holidays));
-  if (specification.trend) further.push(buildTrend(panel));
+  if (specification.trend) further.push(buildTrend(panel, panel.pastWeeks - 1));
   return further;
 }
 
@@ -64,9 +68,10 @@ export function rebuildColumns(
   columns: readonly Column[],
 ): Column[] {
   const byName = new Map(
-    [...buildOwnColumns(panel, specification.splitPrice), ...buildFurtherColumns(panel, holidays, specification)].map(
-      (column) => [column.name, column],
-    ),
+    [
+      ...buildOwnColumns(panel, specification.splitPrice, specification.advertisedPrice),
+      ...buildFurtherColumns(panel, holidays, specification),
+    ].map((column) => [column.name, column]),
   );
   return columns.map((column) => byName.get(column.name) ?? column);
 }
@@ -95,59 +100,63 @@ export interface LineModel extends TargetedEstimate {
   ownEstimate: LineEstimate | null;
 }
 
-export interface ModelNoise {
-  own: LineNoise | null;
-  full: LineNoise;
-}
+/** A fit on all training weeks that fits on shorter stretches take their noise and, under Poisson, their first means from. */
+export type ModelStart = Pick<LineModel, 'estimate' | 'ownEstimate' | 'columns'>;
 
 /**
  * Fits a specification's columns on the used weeks up to `lastWeek`: least squares of ln units, or a Poisson pseudo-likelihood
- * where a listed week sold nothing.
+ * where a listed week sold nothing. `start`: see ModelStart. `ownKnown`: the fit on own columns, where it is known already.
  */
 export function fitLineModel(
   panel: LinePanel,
   columnSet: ColumnSet,
   specification: Specification,
   lastWeek: number,
-  noise?: ModelNoise,
+  start?: ModelStart,
+  ownKnown?: LineEstimate,
 ): LineModel {
-  const estimateOn = (columns: readonly Column[], given: LineNoise | undefined): TargetedEstimate =>
+  const estimateOn = (columns: readonly Column[], from: LineEstimate | null | undefined): TargetedEstimate =>
     panel.hasZeros
-      ? estimatePoisson(panel, columns, specification.halfLifeWeeks, lastWeek, given)
-      : estimateLog(panel, columns, specification.halfLifeWeeks, lastWeek, given);
+      ? estimatePoisson(panel, columns, specification, lastWeek, from ?? null)
+      : estimateLog(panel, columns, specification, lastWeek, from?.noise);
   let ownEstimate: LineEstimate | null = null;
-  const columns = [...columnSet.own, ...columnSet.further];
+  const further =
+    lastWeek === panel.pastWeeks - 1
+      ? columnSet.further
+      : columnSet.further.map((column) => (column.name === TREND ? buildTrend(panel, lastWeek) : column));
+  const columns = [...columnSet.own, ...further];
   if (specification.attraction && panel.series.length > panel.locations.length) {
-    ownEstimate = estimateOn(columnSet.own, noise?.own ?? undefined).estimate;
+    ownEstimate = ownKnown ?? estimateOn(columnSet.own, start?.ownEstimate).estimate;
     columns.push(buildAttraction(panel, fitOwnParts(panel, columnSet.own, ownEstimate)));
   }
-  return { columns, ...estimateOn(columns, noise?.full), ownEstimate };
+  return { columns, ...estimateOn(columns, start?.estimate), ownEstimate };
 }
 
 function estimateLog(
   panel: LinePanel,
   columns: readonly Column[],
-  halfLifeWeeks: number,
+  { halfLifeWeeks, spread }: Specification,
   lastWeek: number,
   noise: LineNoise | undefined,
 ): TargetedEstimate {
   const target = buildLogTarget(panel, halfLifeWeeks);
-  return { estimate: estimateLine(panel, columns, target, lastWeek, noise), target };
+  return { estimate: estimateLine(panel, columns, target, lastWeek, spread, noise), target };
 }
 
 function estimatePoisson(
   panel: LinePanel,
   columns: readonly Column[],
-  halfLifeWeeks: number,
+  { halfLifeWeeks, spread }: Specification,
   lastWeek: number,
-  noise: LineNoise | undefined,
+  from: LineEstimate | null,
 ): TargetedEstimate {
-  let target = buildPoissonTarget(panel, halfLifeWeeks, null);
-  let estimate = estimateLine(panel, columns, target, lastWeek, noise);
-  for (let round = 0; round < POISSON_ROUNDS; round++) {
+  const noise = from?.noise;
+  let target = buildPoissonTarget(panel, halfLifeWeeks, from && fitOwnParts(panel, columns, from));
+  let estimate = estimateLine(panel, columns, target, lastWeek, spread, noise);
+  for (let round = 0; round < (from ? POISSON_ROUNDS_FROM_START : POISSON_ROUNDS); round++) {
     const before = estimate.slopes;
     target = buildPoissonTarget(panel, halfLifeWeeks, fitOwnParts(panel, columns, estimate));
-    estimate = estimateLine(panel, columns, target, lastWeek, noise);
+    estimate = estimateLine(panel, columns, target, lastWeek, spread, noise);
     const moved = estimate.slopes.reduce(
       (most, slopes, s) => Math.max(most, ...slopes.map((slope, k) => Math.abs(slope - before[s]![k]!)), 0),
       0,

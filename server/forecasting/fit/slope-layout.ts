@@ -70,12 +70,17 @@ function countMovedWeeks(
   return most;
 }
 
-/** Used weeks up to `lastWeek` in which the values stand more than 0.02 from their median. */
+const medianOf = new WeakMap<Float64Array, number>();
+
+/** Used weeks up to `lastWeek` in which the values stand more than 0.02 from their median over all used weeks. */
 export function countWeeksAwayFromMedian(values: Float64Array, isUsed: Uint8Array, lastWeek: number): number {
-  const seen: number[] = [];
-  for (let t = 0; t <= lastWeek; t++) if (isUsed[t]) seen.push(values[t]!);
-  if (seen.length === 0) return 0;
-  const sorted = Float64Array.from(seen).sort();
-  const median = sorted[sorted.length >> 1]!;
-  return seen.reduce((sum, value) => sum + (Math.abs(value - median) > SMALLEST_MOVE ? 1 : 0), 0);
+  let median = medianOf.get(values);
+  if (median === undefined) {
+    const sorted = values.filter((_, t) => isUsed[t]).sort();
+    median = sorted.length > 0 ? sorted[sorted.length >> 1]! : 0;
+    medianOf.set(values, median);
+  }
+  let moved = 0;
+  for (let t = 0; t <= lastWeek; t++) if (isUsed[t] && Math.abs(values[t]! - median) > SMALLEST_MOVE) moved++;
+  return moved;
 }

@@ -32,12 +32,12 @@ function startingVariance(priorSpread: number): number {
   return (priorSpread / 4) ** 2;
 }
 
-/** Ridge penalties λ = design effect ÷ variance, per coefficient. */
-export function penaltiesOf(layout: SlopeLayout, components: VarianceComponents): Float64Array {
+/** Ridge penalties λ = design effect ÷ variance, per coefficient; `spread` is a factor on the deviations' variances. */
+export function penaltiesOf(layout: SlopeLayout, components: VarianceComponents, spread = 1): Float64Array {
   return Float64Array.from(layout.columnOf, (column, p) => {
     const level = layout.levelOf[p];
-    if (level === 1) return components.itemDesignEffect / components.item[column]!;
-    if (level === 2) return components.locationDesignEffect / components.location[column]!;
+    if (level === 1) return components.itemDesignEffect / (spread * components.item[column]!);
+    if (level === 2) return components.locationDesignEffect / (spread * components.location[column]!);
     return components.lineDesignEffect / components.line[column]!;
   });
 }

@@ -6,12 +6,6 @@ import { fitOwnParts, rebuildColumns, type LineModel } from '../fit/line-model.t
 import type { Specification } from '../search/specification.ts';
 import type { HolidayWeek } from '../types.ts';
 
-export interface ComingColumns {
-  columns: Column[];
-  /** Per series, per week of the horizon: 'outside-seen-price', 'outside-seen-promotion'. */
-  marks: string[][][];
-}
-
 /**
  * A model's columns on a panel of the same line (the plan, or the plan with promotions off), with coming prices and promotions held at
  * the edge of what was seen, and the neighbours' attraction built from parts held in the same way.
@@ -21,9 +15,9 @@ export function prepareComingColumns(
   holidays: readonly HolidayWeek[],
   specification: Specification,
   model: LineModel,
-): ComingColumns {
+): Column[] {
   const rebuilt = rebuildColumns(panel, holidays, specification, model.columns);
-  const { columns, marks } = holdAtSeenRange(panel, rebuilt);
+  const columns = holdAtSeenRange(panel, rebuilt);
   if (model.ownEstimate) {
     const ownColumns = model.ownEstimate.layout.columns;
     const own = ownColumns.map((column) => columns.find((one) => one.name === column.name) ?? column);
@@ -31,5 +25,5 @@ export function prepareComingColumns(
     const at = columns.findIndex((column) => column.name === ATTRACTION);
     columns[at] = attraction;
   }
-  return { columns, marks };
+  return columns;
 }

@@ -30,7 +30,7 @@ describe('back-test', () => {
     const forecastOf = (rows: typeof chainRows): unknown =>
       forecastLine(hideAfterOrigin(groupByLine(rows)[0]!, [], ORIGIN, 8));
     expect(forecastOf(scrambled)).toEqual(forecastOf(chainRows));
-  });
+  }, 60_000);
 
   it('does read the prices that a plan would hold', () => {
     const dearer = chainRows.map((row) =>
@@ -40,7 +40,7 @@ describe('back-test', () => {
       forecastLine(hideAfterOrigin(groupByLine(rows)[0]!, [], ORIGIN, 8)).series.find((one) => one.item === 'B01')!
         .mean[0]!;
     expect(unitsOf(dearer)).toBeLessThan(unitsOf(chainRows));
-  });
+  }, 60_000);
 
   it('gives the benchmarks that R gives on the same rows', () => {
     // results-of-R.csv, oj_chain, horizons 1-8: naive, snaive52, ma8.

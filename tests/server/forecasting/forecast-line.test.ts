@@ -4,11 +4,20 @@ import { addWeeks } from '../../../shared/domain/weeks.ts';
 import { FIRST_WEEK, generateLine, plannedWeek, soldWeek } from './canonical-line.ts';
 
 describe('forecastLine', () => {
-  it('finds the price slope and the lift that the sales were made with', () => {
-    const { fit } = forecastLine(generateLine({ items: 6, weeks: 156 }));
-    const slope = (name: string): number => fit!.coefficients.find((one) => one.name === name)!.estimate;
-    expect(slope('price paid')).toBeCloseTo(-2, 0);
-    expect(slope('feature')).toBeCloseTo(0.5, 1);
+  it('answers a price cut and a feature as the sales were made to', () => {
+    const input = generateLine({ items: 6, weeks: 156 });
+    const unitsAt = (price: number, feature: number): number =>
+      forecastLine({
+        ...input,
+        series: input.series.map((series, s) => ({
+          ...series,
+          planned: series.planned.map((week) =>
+            s === 0 ? { ...week, price, feature } : { ...week, price: 2, feature: 0 },
+          ),
+        })),
+      }).series[0]!.mean[0]!;
+    expect(Math.abs(unitsAt(1.6, 0) / unitsAt(2, 0) / 0.8 ** -2 - 1)).toBeLessThan(0.12);
+    expect(Math.abs(unitsAt(1.6, 1) / unitsAt(1.6, 0) / Math.exp(0.5) - 1)).toBeLessThan(0.12);
   });
 
   it('gives the same forecast twice', () => {
