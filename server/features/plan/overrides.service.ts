@@ -1,6 +1,6 @@
 import type { NewOverride, SavedOverrides, SaveOverrides } from '../../../shared/contracts/plan.ts';
 import type { ProblemDetail } from '../../../shared/contracts/problem.ts';
-import { scopeHolds, scopeKey, type Scope } from '../../../shared/domain/override-arithmetic.ts';
+import { scopeKey, type Scope } from '../../../shared/domain/override-arithmetic.ts';
 import { addWeeks, listWeeks, toDayNumber, weekLabel, weeksBetween } from '../../../shared/domain/weeks.ts';
 import { writeAudit } from '../../lib/audit.ts';
 import type { Actor } from '../../lib/authorise.ts';
@@ -15,7 +15,9 @@ import {
   describeClashes,
   describeOverrides,
   findClashes,
+  indexByScope,
   replayState,
+  shareWeek,
   whyUnmet,
 } from './plan-state.ts';
 import { insertVersion, snapshotEvery, type NewStoredOverride } from './plan-writing.repository.ts';
@@ -24,6 +26,9 @@ import type { StoredOverride, StoredSeries } from './plan.repository.ts';
 import { rebuildVersion } from './versions.service.ts';
 
 const mostConflictsTold = 1_000;
+/** Far above any week of any item, and small enough that sums of a plan stay exact. */
+const mostUnits = 1e9;
+const largestFactor = 1_000;
 
 /**
  * Saves changes as one new version on top of the newest. Refused as a whole: `plan-locked` where a week is locked, `stale-cells` where somebody else
@@ -72,6 +77,7 @@ export function saveOverrides(
     const overrides = [...stored, ...edits];
     const { plan, unmet } = replayState({ window, series, overrides, lockedWeeks, lockedPlan: before });
     demandMet(unmet);
+    demandSensible(plan);
     demandNotes(save.overrides, settings.noteThreshold, { window, series, before, after: plan });
 
     const modelOf = createScopeSums(
@@ -94,6 +100,7 @@ export function saveOverrides(
     const reason = joinDistinct(edits.map((edit) => edit.reason));
     const note = onlyOne(edits.map((edit) => edit.note));
     const kind = deriveLineState(head) === 'submitted' ? 'adjustment' : 'overrides';
+    const heldByScope = indexByScope(stored);
     const written = await insertVersion(
       tx,
       {
@@ -111,7 +118,7 @@ export function saveOverrides(
       },
       {
         firstWeek: run.firstWeek,
-        overrides: edits.map((edit): NewStoredOverride => toWritten(edit, overrides)),
+        overrides: edits.map((edit): NewStoredOverride => toWritten(edit, heldByScope)),
         changed: changedSeries.map(rowAt),
         snapshot: number % snapshotEvery === 0 ? series.map((_, index) => rowAt(index)) : null,
       },
@@ -159,19 +166,12 @@ export function saveOverrides(
   });
 }
 
-function toWritten(edit: StoredOverride, overrides: readonly StoredOverride[]): NewStoredOverride {
+function toWritten(edit: StoredOverride, heldByScope: (scope: Scope) => readonly StoredOverride[]): NewStoredOverride {
   const { sequence, scope, firstWeek, lastWeek, operation, value, reasonId, note, baseModel } = edit;
   const clears =
     operation === 'clear'
-      ? overrides
-          .filter(
-            (other) =>
-              other.id > 0 &&
-              other.operation !== 'clear' &&
-              scopeHolds(scope, other.scope) &&
-              other.firstWeek <= lastWeek &&
-              firstWeek <= other.lastWeek,
-          )
+      ? heldByScope(scope)
+          .filter((other) => other.operation !== 'clear' && shareWeek(edit, other))
           .map(({ id }) => id)
       : null;
   return { sequence, scope, firstWeek, lastWeek, operation, value, clears, reasonId, note, baseModel };
@@ -223,6 +223,9 @@ function demandUsable(
       if (value !== null) refuse(`${at}/value`, 'must be null for clear');
     } else if (value === null) refuse(`${at}/value`, 'must be a number');
     else if (value < 0 && operation !== 'add') refuse(`${at}/value`, 'must not be negative');
+    else if (Math.abs(value) > (operation === 'scale by' ? largestFactor : mostUnits)) {
+      refuse(`${at}/value`, 'is too large');
+    }
     if (reasonId !== null ? !activeReasons.has(reasonId) : operation !== 'clear') {
       refuse(`${at}/reasonId`, 'must be one of the reasons');
     }
@@ -316,6 +319,15 @@ function demandMet(unmet: readonly { id: number; weekStart: string; reason: keyo
         detail: `${weekLabel(weekStart)}: ${whyUnmet[reason]}`,
       })),
     },
+  );
+}
+
+/** Factors on factors can grow past what a plan can hold. */
+function demandSensible(plan: readonly (readonly number[])[]): void {
+  if (plan.every((row) => row.every((units) => units <= mostUnits))) return;
+  throw new ProblemError(
+    'cannot-spread',
+    `Nothing was saved: a number would be above ${mostUnits.toLocaleString('en')}.`,
   );
 }
 

@@ -4,7 +4,6 @@ import {
   replayOverrides,
   scopeHolds,
   scopeKey,
-  scopesMeet,
   type Replay,
   type Scope,
   type UnmetReason,
@@ -98,6 +97,30 @@ export function comparePlans(
   return change;
 }
 
+/** Finds the overrides whose scope a given one holds, without looking at all of them where it is a single series. */
+export function indexByScope(overrides: readonly StoredOverride[]): (holder: Scope) => readonly StoredOverride[] {
+  const byScope = new Map<string, StoredOverride[]>();
+  for (const override of overrides) {
+    const key = scopeKey(override.scope);
+    const ofScope = byScope.get(key);
+    if (ofScope) ofScope.push(override);
+    else byScope.set(key, [override]);
+  }
+  return (holder) =>
+    holder.itemId !== null && holder.locationId !== null
+      ? (byScope.get(scopeKey(holder)) ?? [])
+      : [...byScope.values()].flatMap((ofScope) => (scopeHolds(holder, ofScope[0]!.scope) ? ofScope : []));
+}
+
+export function shareWeek(a: WeekRange, b: WeekRange): boolean {
+  return a.firstWeek <= b.lastWeek && b.firstWeek <= a.lastWeek;
+}
+
+interface WeekRange {
+  firstWeek: string;
+  lastWeek: string;
+}
+
 /** Why an override can't be met, as the end of a sentence. */
 export const whyUnmet: Readonly<Record<UnmetReason, string>> = {
   locked: 'the week is locked',
@@ -149,23 +172,9 @@ export function describeOverrides(state: {
       unmet.set(id, `${weekLabel(weekStart)}: ${whyUnmet[reason]}`);
     }
   }
-  const inForce = new Map<string, StoredOverride[]>();
-  for (const override of overrides) {
-    if (!kept.has(override.id)) continue;
-    const ofScope = inForce.get(scopeKey(override.scope));
-    if (ofScope) ofScope.push(override);
-    else inForce.set(scopeKey(override.scope), [override]);
-  }
-  const isNeeded = (clear: StoredOverride): boolean => {
-    const isSeries = clear.scope.itemId !== null && clear.scope.locationId !== null;
-    const held = isSeries
-      ? (inForce.get(scopeKey(clear.scope)) ?? [])
-      : [...inForce.values()].flatMap((ofScope) => (scopeHolds(clear.scope, ofScope[0]!.scope) ? ofScope : []));
-    return held.some(
-      ({ sequence, firstWeek, lastWeek }) =>
-        sequence < clear.sequence && firstWeek <= clear.lastWeek && clear.firstWeek <= lastWeek,
-    );
-  };
+  const heldInForce = indexByScope(overrides.filter(({ id }) => kept.has(id)));
+  const isNeeded = (clear: StoredOverride): boolean =>
+    heldInForce(clear.scope).some((other) => other.sequence < clear.sequence && shareWeek(clear, other));
   return overrides
     .filter((override) => kept.has(override.id) || (override.operation === 'clear' && isNeeded(override)))
     .map((override): OverrideInForce => {
@@ -187,10 +196,8 @@ export function describeOverrides(state: {
     });
 }
 
-interface Edit {
+interface Edit extends WeekRange {
   scope: Scope;
-  firstWeek: string;
-  lastWeek: string;
 }
 
 export interface Clash {
@@ -206,20 +213,35 @@ export function findClashes(
   { baseVersion, authorId }: { baseVersion: number; authorId: number },
 ): Clash[] {
   const theirs = overrides.filter((override) => override.version > baseVersion && override.authorId !== authorId);
-  if (theirs.length === 0) return [];
+  const newest = new Map<string, Map<number | null, Map<number | null, StoredOverride>>>();
+  for (const other of theirs) {
+    for (const weekStart of weeksOf(other)) {
+      const items = newest.get(weekStart) ?? new Map<number | null, Map<number | null, StoredOverride>>();
+      const locations = items.get(other.scope.itemId) ?? new Map<number | null, StoredOverride>();
+      newest.set(weekStart, items.set(other.scope.itemId, locations.set(other.scope.locationId, other)));
+    }
+  }
   const clashes = new Map<string, Clash>();
-  for (const edit of edits) {
-    for (const other of theirs) {
-      if (!scopesMeet(edit.scope, other.scope)) continue;
-      const first = edit.firstWeek > other.firstWeek ? edit.firstWeek : other.firstWeek;
-      const last = edit.lastWeek < other.lastWeek ? edit.lastWeek : other.lastWeek;
-      if (first > last) continue;
-      for (const weekStart of listWeeks(first, weeksBetween(first, last) + 1)) {
-        clashes.set(`${scopeKey(edit.scope)}@${weekStart}`, { scope: edit.scope, weekStart, theirs: other });
-      }
+  for (const { scope, ...range } of edits) {
+    for (const weekStart of theirs.length > 0 ? weeksOf(range) : []) {
+      const met = valuesMet(newest.get(weekStart), scope.itemId)
+        .flatMap((locations) => valuesMet(locations, scope.locationId))
+        .reduce<StoredOverride | null>((last, one) => (last && last.sequence > one.sequence ? last : one), null);
+      if (met) clashes.set(`${scopeKey(scope)}@${weekStart}`, { scope, weekStart, theirs: met });
     }
   }
   return [...clashes.values()];
+}
+
+function weeksOf({ firstWeek, lastWeek }: WeekRange): string[] {
+  return listWeeks(firstWeek, weeksBetween(firstWeek, lastWeek) + 1);
+}
+
+/** Entries that share something with a part of a scope: all with the whole, else those of the part and of the whole. */
+function valuesMet<Value>(entries: ReadonlyMap<number | null, Value> | undefined, id: number | null): Value[] {
+  if (!entries) return [];
+  if (id === null) return [...entries.values()];
+  return [entries.get(id), entries.get(null)].filter((value) => value !== undefined);
 }
 
 /** Words the clashes for a person: the plan of each in the base version, in the newest one, and as this save wants it. */

@@ -172,17 +172,28 @@ async function loadPlanFigures(
     locations: (await repository.listLocations(tx, [...new Set(rows.map(({ locationId }) => locationId))])).map(
       ({ id, name }) => ({ id, name }),
     ),
-    series: rows.map((row, index) => ({ ...row, plan: planOf[index]! })),
+    series: rows.map((row, index) => ({ ...roundFigures(row), plan: planOf[index]! })),
     plans: planOf,
     totals: (await repository.listRunTotals(tx, lineId, run.id)).map(({ itemId, locationId, ...range }) => ({
       scope: { itemId, locationId },
-      ...range,
+      ...roundFigures(range),
     })),
     overrides: judgeOverrides(window, rows, planOf, stored, lockedWeeks, (await loadSettings(tx)).lookThreshold),
     findings: fit?.findings ?? [],
     fit: fit ? { summary: fit.summary, specification: fit.specification } : null,
   };
 }
+
+/** Base and ranges to a hundredth of a unit: an estimate has no more digits, and the answer is a third as long. */
+function roundFigures<Row extends Partial<Record<(typeof roundedFigures)[number], number[]>>>(row: Row): Row {
+  const rounded = roundedFigures.flatMap((name) => {
+    const values = row[name];
+    return values ? [[name, values.map((units) => Math.round(units * 100) / 100)] as const] : [];
+  });
+  return { ...row, ...Object.fromEntries(rounded) };
+}
+
+const roundedFigures = ['base', 'p2_5', 'p10', 'p50', 'p90', 'p97_5'] as const;
 
 function judgeOverrides(
   window: Window,

@@ -289,6 +289,17 @@ describe('a save is refused and nothing is written', () => {
     );
   });
 
+  it('where a number would grow past what a plan can hold', async () => {
+    for (const edit of [change({ value: 1e12 }), change({ operation: 'scale by', value: 1e6 })]) {
+      const answer = save(world.planner, world.lineId, newest(), [edit]);
+      expect((await expectRefusal(answer, 'invalid-request', 422)).errors).toEqual([
+        { pointer: '/overrides/0/value', detail: 'is too large' },
+      ]);
+    }
+    const factors = Array.from({ length: 5 }, () => change({ operation: 'scale by', value: 900 }));
+    await expectRefusal(save(world.planner, world.lineId, newest(), factors), 'cannot-spread', 422);
+  });
+
   it('with the reason where a total can’t be met', async () => {
     const { itemId, locationId } = cellAt(0);
     const problem = await expectRefusal(
