@@ -2,6 +2,7 @@ import type { LinePanel } from '../features/line-panel.ts';
 import { markUnseen } from '../features/unseen-marks.ts';
 import { reportFit } from '../fit/fit-report.ts';
 import { keepFit } from '../fit/kept-fit.ts';
+import type { LineModel } from '../fit/line-model.ts';
 import { computeRecentLevels, type CarryRule } from '../fit/recent-level.ts';
 import { computeWeekInfluences } from '../ranges/coefficient-draws.ts';
 import {
@@ -25,7 +26,7 @@ import { buildRollingFrame, type RollingFrame } from '../search/rolling-frame.ts
 import type { Specification } from '../search/specification.ts';
 import type { Finding, LineFit, LineInput, SeriesMethod } from '../types.ts';
 import { buildEnsemble, leaveOneOutResiduals, predictByEnsemble } from './ensemble.ts';
-import { computeSmearing } from './smearing.ts';
+import { computeSmearing, type RolledCell } from './smearing.ts';
 
 const TIMES_LARGEST_SEEN = 3;
 
@@ -64,7 +65,8 @@ export function forecastByRegression(
   const members = buildEnsemble(panel, input.holidays, chosen, kept);
   const residuals = leaveOneOutResiduals(panel, averaged, kept);
   const levels = computeRecentLevels(panel, residuals, lastWeek, carry);
-  const smearing = panel.hasZeros ? { promoted: 1, other: 1 } : computeSmearing(panel, residuals);
+  const rolled = rollCells(panel, frame, chosen);
+  const smearing = panel.hasZeros ? { promoted: 1, other: 1 } : computeSmearing(panel, residuals, rolled);
   const unseen = markUnseen(panel);
   const linear = panel.series.map((series, s): Float64Array | undefined => {
     if (series.usedWeeks === 0) return undefined;
@@ -90,7 +92,7 @@ export function forecastByRegression(
   const scales = estimateNoiseScales(panel, residuals);
   const standardised = standardise(panel, residuals, scales);
   const quantiles = quantilesByKind(panel, standardised);
-  const errors = collectErrors(panel, frame, chosen, scales, influences);
+  const errors = collectErrors(panel, frame, rolled, winner.model, scales, influences);
   simulatePaths(
     panel,
     {
@@ -178,15 +180,9 @@ function quantilesByKind(
   return [of(0), of(1)];
 }
 
-function collectErrors(
-  panel: LinePanel,
-  frame: RollingFrame,
-  { averaged, carry }: ChosenSpecification,
-  scales: NoiseScales,
-  influences: readonly Float64Array[],
-): StandardisedError[] {
+/** Out-of-sample cells of the rolling origins beside the medians of the chosen average, recent level included. */
+function rollCells(panel: LinePanel, frame: RollingFrame, { averaged, carry }: ChosenSpecification): RolledCell[] {
   if (frame.origins.length === 0) return [];
-  const { model } = averaged[0]!;
   const linear = carryForward(
     panel,
     frame,
@@ -194,14 +190,26 @@ function collectErrors(
     averageResiduals(averaged),
     carry,
   );
-  return Array.from(linear, (value, i): StandardisedError => {
-    const s = frame.seriesOf[i]!;
+  return Array.from(linear, (value, i) => {
     const week = frame.weekOf[i]!;
-    const kind = panel.series[s]!.isPromoted[week] as 0 | 1;
+    const kind = panel.series[frame.seriesOf[i]!]!.isPromoted[week] as 0 | 1;
+    return { week, kind, units: frame.units[i]!, median: Math.exp(value) };
+  });
+}
+
+function collectErrors(
+  panel: LinePanel,
+  frame: RollingFrame,
+  rolled: readonly RolledCell[],
+  model: LineModel,
+  scales: NoiseScales,
+  influences: readonly Float64Array[],
+): StandardisedError[] {
+  return rolled.map(({ week, kind, units, median }, i): StandardisedError => {
+    const s = frame.seriesOf[i]!;
     const variance = scales[kind][s]! ** 2 + coefficientVariance(model, model.columns, influences, panel, s, week);
-    const ratio = frame.units[i]! / Math.exp(value);
     return {
-      value: Math.log(Math.max(ratio, 0.02)) / Math.sqrt(variance),
+      value: Math.log(Math.max(units / median, 0.02)) / Math.sqrt(variance),
       week,
       horizon: week - frame.origins[frame.originOf[i]!]!,
       kind,

@@ -1,4 +1,5 @@
 import type { LinePanel } from '../features/line-panel.ts';
+import { countWeeksAwayFromMedian } from '../fit/slope-layout.ts';
 import type { CarryRule } from '../fit/recent-level.ts';
 import type { HolidayWeek } from '../types.ts';
 import { carryForward, rollCandidate, scoreForecasts, type OwnFits, type RolledCandidate } from './roll-candidate.ts';
@@ -10,7 +11,7 @@ import type { Specification } from './specification.ts';
 const AVERAGED_WITHIN = 0.015;
 const MOST_AVERAGED = 4;
 /** What a specification has to earn: it must be better by this many standard errors of its gain over the origins. */
-const STANDARD_ERRORS_TO_EARN = 1;
+const STANDARD_ERRORS_TO_EARN = 1.5;
 const WEEKS_IN_YEAR = 52;
 
 export interface ScoredCandidate {
@@ -50,7 +51,7 @@ interface Step {
 
 /**
  * Chooses among specifications on rolling origins inside the training weeks by CRPS in units, walking from a plain one through
- * groups of changes and keeping what is better. Season, trend, dips and holidays must be better by more than one standard error of
+ * groups of changes and keeping what is better. Season, trend, dips and holidays must be better by more than 1.5 standard errors of
  * their gain over the origins: on one to two and a half years they mostly look better than they are.
  */
 export function chooseSpecification(
@@ -102,7 +103,8 @@ function listSteps(panel: LinePanel, holidays: readonly HolidayWeek[], frame: Ro
   const plain = (change: Partial<Specification>): Step => ({ change, isEarned: false });
   const earned = (change: Partial<Specification>): Step => ({ change, isEarned: true });
   const earliest = frame.origins.at(-1)! + 1;
-  const groups: Step[][] = [[plain({ advertisedPrice: false })], [plain({ splitPrice: true })]];
+  const groups: Step[][] = [[plain({ advertisedPrice: false })]];
+  if (hasRegularPriceMoved(panel)) groups.push([plain({ splitPrice: true })]);
   if (panel.series.length > panel.locations.length) {
     groups.push([
       plain({ neighbourPrice: false }),
@@ -122,6 +124,13 @@ function listSteps(panel: LinePanel, holidays: readonly HolidayWeek[], frame: Ro
   }
   if (earliest >= 40) groups.push([earned({ trend: true })]);
   return groups;
+}
+
+/** Whether any series' regular price moved in at least four weeks; else the price paid and the cut are one and the same. */
+function hasRegularPriceMoved(panel: LinePanel): boolean {
+  return panel.series.some(
+    (series) => countWeeksAwayFromMedian(series.lnRegular, series.isUsed, panel.pastWeeks - 1) >= 4,
+  );
 }
 
 /** Whether the gain in CRPS is larger than its standard error over the origins allows for chance. */
