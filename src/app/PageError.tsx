@@ -14,7 +14,7 @@ export function PageError() {
   if (error instanceof ProblemError || isRouteErrorResponse(error)) {
     return (
       <Page>
-        <ErrorState error={error} onRetry={() => window.location.reload()} />
+        <ErrorState isPage error={error} onRetry={() => window.location.reload()} />
       </Page>
     );
   }

@@ -19,7 +19,11 @@ export function Shell() {
   if (problem && (session.data === undefined || categories.data === undefined)) {
     return (
       <main className="px-6 pt-10">
-        <ErrorState error={problem} onRetry={() => void (session.error ? session.refetch() : categories.refetch())} />
+        <ErrorState
+          isPage
+          error={problem}
+          onRetry={() => void (session.error ? session.refetch() : categories.refetch())}
+        />
       </main>
     );
   }

@@ -4,11 +4,38 @@ import { useTranslation } from 'react-i18next';
 import { describeError, ProblemError } from '../lib/api.ts';
 import { Button } from './Button.tsx';
 
+/** A state that fills the page is its heading; within a page it is a line of display type. */
+function StateTitle({
+  isPage,
+  className = '',
+  children,
+}: {
+  isPage: boolean;
+  className?: string;
+  children: ReactNode;
+}) {
+  return isPage ? (
+    <h1 className={className}>{children}</h1>
+  ) : (
+    <p className={`font-display text-[15px]/5 font-[620] [font-stretch:92%] ${className}`}>{children}</p>
+  );
+}
+
 /** Nothing here yet: says why and what to do. */
-export function EmptyState({ title, children, action }: { title: string; children?: ReactNode; action?: ReactNode }) {
+export function EmptyState({
+  title,
+  children,
+  action,
+  isPage = false,
+}: {
+  title: string;
+  children?: ReactNode;
+  action?: ReactNode;
+  isPage?: boolean;
+}) {
   return (
     <div className="max-w-[560px] border-l-2 border-line py-2 pl-5">
-      <h3>{title}</h3>
+      <StateTitle isPage={isPage}>{title}</StateTitle>
       {children && <div className="mt-1 text-soft">{children}</div>}
       {action && <div className="mt-3">{action}</div>}
     </div>
@@ -40,13 +67,23 @@ export function LoadingState({ label }: { label?: string }) {
   );
 }
 
-export function ErrorState({ error, onRetry }: { error: unknown; onRetry?: () => void }) {
+export function ErrorState({
+  error,
+  onRetry,
+  isPage = false,
+}: {
+  error: unknown;
+  onRetry?: () => void;
+  isPage?: boolean;
+}) {
   const { t } = useTranslation('common');
   const { title, detail } = describeError(error);
   const instance = error instanceof ProblemError ? error.instance : null;
   return (
     <div role="alert" className="max-w-[620px] border-l-2 border-madder py-2 pl-5">
-      <h3 className="text-madder">{title}</h3>
+      <StateTitle isPage={isPage} className="text-madder">
+        {title}
+      </StateTitle>
       <p className="mt-1">{detail}</p>
       {instance && <p className="mt-1 text-small text-soft">{t('requestNumber', { instance })}</p>}
       {onRetry && (
@@ -60,11 +97,11 @@ export function ErrorState({ error, onRetry }: { error: unknown; onRetry?: () =>
   );
 }
 
-export function NoPermission({ detail }: { detail?: string }) {
+export function NoPermission({ detail, isPage = false }: { detail?: string; isPage?: boolean }) {
   const { t } = useTranslation('common');
   return (
     <div role="alert" className="max-w-[560px] border-l-2 border-rule py-2 pl-5">
-      <h3>{t('noPermission.title')}</h3>
+      <StateTitle isPage={isPage}>{t('noPermission.title')}</StateTitle>
       <p className="mt-1 text-soft">{detail ?? t('noPermission.detail')}</p>
     </div>
   );
@@ -75,17 +112,20 @@ export function QueryStates<Value>({
   query,
   children,
   loading,
+  isPage = false,
 }: {
   query: Pick<UseQueryResult<Value>, 'data' | 'error' | 'refetch'>;
   children: (value: Value) => ReactNode;
   loading?: string;
+  /** The answer is the page itself, heading and all. */
+  isPage?: boolean;
 }) {
   if (query.data !== undefined) return children(query.data);
   if (query.error) {
     if (query.error instanceof ProblemError && query.error.status === 403) {
-      return <NoPermission detail={query.error.detail} />;
+      return <NoPermission detail={query.error.detail} isPage={isPage} />;
     }
-    return <ErrorState error={query.error} onRetry={() => void query.refetch()} />;
+    return <ErrorState error={query.error} onRetry={() => void query.refetch()} isPage={isPage} />;
   }
   return <LoadingState label={loading} />;
 }

@@ -68,7 +68,7 @@ export const commonTexts = {
     shown_other: '{{count}} weeks',
     soldAndPlanned: '{{sold}} sold, {{planned}} planned',
     summary:
-      '{{sold}} weeks sold with {{units}} units, {{planned}} weeks planned with {{plannedUnits}} units; {{promoted}} weeks with a promotion, {{locked}} locked, {{holidays}} holidays.',
+      'Weeks sold: {{sold}}, {{units}} units. Weeks planned: {{planned}}, {{plannedUnits}} units. Weeks with a promotion: {{promoted}}; locked: {{locked}}; holidays: {{holidays}}.',
     tableTitle: '{{title}}, week by week',
     week: 'Week',
     starts: 'starts',

@@ -104,6 +104,7 @@ export const salesTexts = {
     newLine: 'a new line…',
     newLineName: 'Name of the new line',
     choose: 'choose…',
+    byItems: 'as its lines and items say',
     columnsCaption: 'Columns of the file, what each means, and the first rows',
     meaningOf: 'Column {{letter}}, {{header}}, means',
     mechanicOf: 'Name of the mechanic in column {{letter}}',

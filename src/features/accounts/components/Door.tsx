@@ -60,13 +60,13 @@ export function Door({ title, lead, children }: { title: string; lead?: ReactNod
   const { t } = useTranslation('accounts');
   return (
     <div className="grid min-h-dvh grid-cols-1 min-[900px]:grid-cols-[65fr_2px_35fr]">
-      <section className="relative hidden min-h-[640px] overflow-hidden min-[900px]:block">
+      <header className="relative hidden min-h-[640px] overflow-hidden min-[900px]:block">
         <Band />
         <div className="absolute top-16 left-16">
           <p className="font-display text-[92px]/[92px] font-[680] tracking-[-0.03em] [font-stretch:88%]">Fairweek</p>
           <p className="mt-4 max-w-[420px] text-[20px]/7 text-soft">{t('promise')}</p>
         </div>
-      </section>
+      </header>
       <div className="seam hidden min-[900px]:block" aria-hidden="true" />
       <main className="flex flex-col bg-sheet px-8 py-12 min-[1280px]:px-[88px]">
         <div className="my-auto w-full max-w-[400px]">

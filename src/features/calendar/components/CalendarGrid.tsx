@@ -32,7 +32,7 @@ export function CalendarGrid({ view, seamAfter, chosen, onChoose }: GridProps) {
     });
   return (
     <div className="relative overflow-x-auto" tabIndex={0} role="region" aria-label={t('tab')}>
-      <table className="w-full table-fixed border-collapse" style={{ minWidth: 180 + view.weeks * 38 }}>
+      <table className="w-full table-fixed border-collapse" style={{ minWidth: 180 + view.weeks * 36 }}>
         <caption className="sr-only">
           {t('caption', {
             category: view.category.name,

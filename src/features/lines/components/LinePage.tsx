@@ -15,6 +15,7 @@ import { EffectTable } from './EffectTable.tsx';
 import { ExpertTable } from './ExpertTable.tsx';
 import { FindingList } from './FindingList.tsx';
 import { FitFacts } from './FitFacts.tsx';
+import { LineOutlook } from './LineOutlook.tsx';
 
 export function LinePage() {
   const { t } = useTranslation('lines');
@@ -23,7 +24,7 @@ export function LinePage() {
   useTitle(view.data ? t('tab', { line: view.data.line.name }) : null);
   return (
     <Page>
-      <QueryStates query={view} loading={t('loading')}>
+      <QueryStates isPage query={view} loading={t('loading')}>
         {(answer) => <LineView view={answer} />}
       </QueryStates>
     </Page>
@@ -65,6 +66,7 @@ function LineView({ view }: { view: LineFitView }) {
             <ExpertTable coefficients={fit.coefficients} />
           </div>
           <div className="grid min-w-0 grid-cols-[minmax(0,1fr)] content-start gap-8">
+            <LineOutlook lineId={line.id} />
             <FitFacts fit={fit} />
             <FindingList findings={fit.findings} />
             <p className="text-small text-soft">{t('caution')}</p>

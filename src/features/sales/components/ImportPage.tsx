@@ -28,7 +28,7 @@ export function ImportPage() {
   if (detail.data) return <OneImport key={importId} detail={detail.data} />;
   return (
     <Page>
-      <QueryStates query={detail} loading={t('page.loading')}>
+      <QueryStates isPage query={detail} loading={t('page.loading')}>
         {() => null}
       </QueryStates>
     </Page>

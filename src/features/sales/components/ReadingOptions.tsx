@@ -136,7 +136,7 @@ function CategoryChoice({ mapping, isOpen, onChange }: ChoiceProps) {
         })
       }
     >
-      <option value="">{t('reading.choose')}</option>
+      <option value="">{t('reading.byItems')}</option>
       {categories
         .filter(({ id }) => may('import-sales', id) || id === mapping.categoryId)
         .map(({ id, name }) => (

@@ -44,9 +44,10 @@ export function SettingsPage() {
         </nav>
         <div className="min-w-0">
           {part === 'general' && <GeneralSettings isAdministrator={isAdministrator} />}
-          {part === 'people' && (isAdministrator ? <PeopleSettings /> : <NoPermission detail={t('adminOnly')} />)}
+          {part === 'people' &&
+            (isAdministrator ? <PeopleSettings /> : <NoPermission isPage detail={t('adminOnly')} />)}
           {part === 'range' && <RangeSettings />}
-          {part === null && <NoPermission />}
+          {part === null && <NoPermission isPage />}
         </div>
       </div>
     </Page>

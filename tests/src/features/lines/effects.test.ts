@@ -1,0 +1,73 @@
+import { describe, expect, it } from 'vitest';
+import { listEffects, readSeasonSpan } from '../../../../src/features/lines/effects.ts';
+import { groupFindings } from '../../../../src/features/lines/findings.ts';
+
+const coefficient = (name: string, group: string, estimate: number, spread = 0.1) => ({
+  name,
+  group,
+  estimate,
+  standardError: spread / 2,
+  low95: estimate - spread,
+  high95: estimate + spread,
+});
+
+describe('effects', () => {
+  it('turn an elasticity into what a price 10 % higher does, its range in order', () => {
+    const [effect] = listEffects([coefficient('regular price', 'price', -1.5)]);
+    expect(effect?.sentence).toBe('regular-price');
+    expect(effect?.factor).toBeCloseTo(1.1 ** -1.5, 12);
+    expect(effect?.low).toBeCloseTo(1.1 ** -1.6, 12);
+    expect(effect?.high).toBeCloseTo(1.1 ** -1.4, 12);
+    expect(effect?.isUncertain).toBe(false);
+  });
+
+  it('turn the slope of a price cut into what 20 % off does', () => {
+    const [effect] = listEffects([coefficient('price cut', 'promotion', -2.5)]);
+    expect(effect?.factor).toBeCloseTo(0.8 ** -2.5, 12);
+    expect(effect?.low).toBeLessThan(effect?.high ?? 0);
+  });
+
+  it('turn a dip after a cut into less', () => {
+    const [effect] = listEffects([coefficient('cut one week earlier', 'around', -0.4)]);
+    expect(effect?.factor).toBeCloseTo(Math.exp(0.4 * Math.log(0.8)), 12);
+  });
+
+  it('say when they can’t be told from nothing', () => {
+    const [effect] = listEffects([coefficient('multibuy', 'promotion', 0.05)]);
+    expect(effect).toMatchObject({ sentence: 'mechanic', name: 'multibuy', isUncertain: true });
+  });
+
+  it('name holidays by the week they speak of', () => {
+    const [effect] = listEffects([coefficient('Twelfth Night: week before', 'holiday', 0.2)]);
+    expect(effect).toMatchObject({ sentence: 'holiday-before', name: 'Twelfth Night' });
+  });
+
+  it('leave out what was taken as none', () => {
+    expect(listEffects([coefficient('coupon', 'promotion', 0, 0)])).toEqual([]);
+  });
+
+  it('join the season’s waves into highest against lowest day', () => {
+    const season = [coefficient('season cosine 1', 'season', 0.3), coefficient('season sine 1', 'season', 0)];
+    const span = readSeasonSpan(season);
+    expect(span?.highestDay).toBe(0);
+    expect(Math.abs((span?.lowestDay ?? 0) - 183)).toBeLessThanOrEqual(1);
+    expect(span?.factor).toBeCloseTo(Math.exp(0.6), 3);
+    expect(listEffects(season)).toMatchObject([{ sentence: 'season', low: null, high: null }]);
+  });
+});
+
+describe('findings', () => {
+  it('that say the same of several places are said once', () => {
+    const groups = groupFindings([
+      { kind: 'series-too-thin', item: 'A', location: 'North', values: { weeks: 3 } },
+      { kind: 'column-never-happened', values: { column: 'display' } },
+      { kind: 'series-too-thin', item: 'B', location: 'North', values: { weeks: 5 } },
+      { kind: 'column-never-happened', values: { column: 'coupon' } },
+    ]);
+    expect(groups.map(({ kind, places }) => [kind, places])).toEqual([
+      ['series-too-thin', ['A, North', 'B, North']],
+      ['column-never-happened', []],
+      ['column-never-happened', []],
+    ]);
+  });
+});
