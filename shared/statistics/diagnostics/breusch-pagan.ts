@@ -33,3 +33,49 @@ export function testBreuschPagan(
   if (degrees < 1) throw new InvalidInputError('the test needs a column beside the intercept');
   return { statistic, degrees, p: computeChiSquareTail(Math.max(0, statistic), degrees) };
 }
+
+/**
+ * Koenker's test against the columns of `input` and one intercept per series, these absorbed by centring within the series: statistic and degrees
+ * are those of a design with a dummy for each. series: one label per row. Checked against R's lmtest::bptest on the explicit dummies.
+ * Throws InvalidInputError for a weighted or penalised design or if there is nothing to test against.
+ */
+export function testBreuschPaganWithinSeries(
+  input: LeastSquaresInput,
+  residuals: Float64Array,
+  series: ArrayLike<number | string>,
+): ChiSquareTest {
+  if (input.weights || input.penalties) throw new InvalidInputError('the test takes an unweighted, unpenalised design');
+  const { rows, columns } = input;
+  const squares = residuals.map((residual) => residual * residual);
+  const mean = squares.reduce((sum, square) => sum + square, 0) / rows;
+  const total = squares.reduce((sum, square) => sum + (square - mean) ** 2, 0);
+  if (total === 0) throw new UndefinedStatisticError('all squared residuals are equal');
+  const members = new Map<number | string, number[]>();
+  for (let i = 0; i < rows; i++) {
+    const own = members.get(series[i]!);
+    if (own) own.push(i);
+    else members.set(series[i]!, [i]);
+  }
+  const design = input.design.slice();
+  const centred = squares.slice();
+  let explained = 0;
+  for (const own of members.values()) {
+    for (let j = 0; j < columns; j++) {
+      const average = own.reduce((sum, i) => sum + design[i * columns + j]!, 0) / own.length;
+      for (const i of own) design[i * columns + j]! -= average;
+    }
+    const average = own.reduce((sum, i) => sum + squares[i]!, 0) / own.length;
+    for (const i of own) centred[i]! -= average;
+    explained += own.length * (average - mean) ** 2;
+  }
+  let rank = 0;
+  if (columns > 0) {
+    const fit = fitLeastSquares({ design, rows, columns, response: centred });
+    rank = fit.rank;
+    explained += centred.reduce((sum, value) => sum + value * value, 0) - fit.residualSumOfSquares;
+  }
+  const degrees = members.size - 1 + rank;
+  if (degrees < 1) throw new InvalidInputError('the test needs a column beside the intercept');
+  const statistic = (rows * explained) / total;
+  return { statistic, degrees, p: computeChiSquareTail(Math.max(0, statistic), degrees) };
+}

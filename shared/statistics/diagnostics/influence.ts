@@ -61,3 +61,24 @@ export function computeInfluence(fit: LeastSquaresFit): (RowInfluence | null)[] 
     };
   });
 }
+
+/**
+ * Cook's (1977) distances w·e²·h / (p·s²·(1 − h)²) of a fit whose leverages and parameters are counted by the caller, such as one with weights,
+ * absorbed intercepts or penalties; null where a row has leverage 1. Checked against R's cooks.distance.
+ * Throws UndefinedStatisticError if sigma is 0.
+ */
+export function computeCooksDistances(
+  fit: { residuals: Float64Array; weights?: Float64Array; leverages: Float64Array },
+  parameters: number,
+  sigma: number,
+): (number | null)[] {
+  const { residuals, weights, leverages } = fit;
+  if (residuals.length !== leverages.length) throw new InvalidInputError('as many leverages as residuals');
+  if (sigma === 0) throw new UndefinedStatisticError('without residuals no row has influence');
+  return Array.from(residuals, (residual, i) => {
+    const leverage = leverages[i]!;
+    const freedom = 1 - leverage;
+    if (freedom < smallestFreedom) return null;
+    return ((weights?.[i] ?? 1) * residual ** 2 * leverage) / (parameters * (sigma * freedom) ** 2);
+  });
+}

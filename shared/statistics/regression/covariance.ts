@@ -9,16 +9,18 @@ export type CovarianceFit = Pick<
   'rank' | 'kept' | 'factorR' | 'residuals' | 'residualSumOfSquares'
 > & {
   hatDiagonal: Float64Array | null;
+  /** Parameters used up, where neither the rank nor the penalties tell: absorbed intercepts, coefficients partialled out. */
+  parameters?: number;
 };
 
 /**
  * Degrees of freedom left: rows of positive weight − rank, or with penalties − the trace of the hat matrix (Hastie & Tibshirani 1990,
- * Generalized Additive Models, 3.5). Throws TooFewRowsError if none are left.
+ * Generalized Additive Models, 3.5), or − the fit's own count of parameters. Throws TooFewRowsError if none are left.
  */
 export function computeResidualDegrees(input: LeastSquaresInput, fit: CovarianceFit): number {
   const rows = countWeightedRows(input);
-  let used = fit.rank;
-  if (input.penalties?.some((penalty) => penalty > 0)) {
+  let used = fit.parameters ?? fit.rank;
+  if (fit.parameters === undefined && input.penalties?.some((penalty) => penalty > 0)) {
     used = readLeverages(fit).reduce((sum, leverage) => sum + leverage, 0);
   }
   if (rows - used <= 1e-9) throw new TooFewRowsError(rows, Math.ceil(used) + 1);
