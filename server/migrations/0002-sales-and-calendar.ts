@@ -76,8 +76,8 @@ create table sales_entry (
   days_open real,
   file_row integer
 ) partition by range (week_start);
-create index sales_entry_key_idx on sales_entry (item_id, location_id, week_start);
--- Entries of an import lie together, so a block range index finds them and costs next to nothing to keep.
+-- No index by key: the earlier values of a key lie in one month's table, which is read whole in milliseconds; keeping the index took as long as
+-- writing the rows. Entries of an import lie together, so a block range index finds them and costs next to nothing to keep.
 create index sales_entry_import_idx on sales_entry using brin (import_id) with (pages_per_range = 32);
 
 -- The application may not create tables; it asks for the months that an import needs, in a transaction of its own before the import's.

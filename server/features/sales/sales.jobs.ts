@@ -90,7 +90,8 @@ async function readIntoPreview(context: JobContext, stored: StoredImport, folder
     await context.report(0.9, { key: 'comparingRows', values: { rows: reading.rowsRead } });
     await inTransaction(database, async (tx) => {
       await demandState(tx, stored.id, 'reading');
-      const totals = await totalStaged(tx, mapping, reading, file.path);
+      await pourStaged(tx, reading, file.path);
+      const totals = await totalPoured(tx, mapping, reading);
       const { resolver } = reading;
       if (resolver.missingChoice !== null) preview.obstacle = missingChoiceTexts[resolver.missingChoice];
       preview.unknown = resolver.listUnknown();
@@ -130,8 +131,10 @@ export const acceptImportJob: JobHandler = async (context) => {
 
 async function mergeFile(context: JobContext, stored: StoredImport, folder: string): Promise<void> {
   const { database, actor, payload } = context;
-  const { mapping } = stored;
-  if (mapping === null) throw new ProblemError('mapping-incomplete', 'Choose what the columns mean first.');
+  const { mapping, totals: checked } = stored;
+  if (mapping === null || checked === null) {
+    throw new ProblemError('mapping-incomplete', 'Choose what the columns mean first.');
+  }
   const createsUnknown = payload.createUnknown === true;
   await context.report(0.02, { key: 'openingFile', values: { file: stored.fileName } });
   const table = await openStoredFile(database, stored, folder);
@@ -139,7 +142,7 @@ async function mergeFile(context: JobContext, stored: StoredImport, folder: stri
   let reading: StagedReading;
   try {
     const { range } = await inTransaction(database, loadSurroundings);
-    const expectedRows = Math.max(1, stored.totals?.rowsRead ?? 1);
+    const expectedRows = Math.max(1, checked.rowsRead);
     reading = await stageRows(table, mapping, range, toChoices(actor, mapping), file, (rows) =>
       context.report(0.05 + 0.65 * Math.min(1, rows / expectedRows), { key: 'readingRows', values: { rows } }),
     );
@@ -159,7 +162,15 @@ async function mergeFile(context: JobContext, stored: StoredImport, folder: stri
   await inTransaction(database, async (tx) => {
     await staging.lockMerges(tx);
     await demandState(tx, stored.id, 'accepting');
-    const totals = await totalStaged(tx, mapping, reading, file.path);
+    await pourStaged(tx, reading, file.path);
+    // What the rows changed is told as it was when the person looked; the rows themselves are counted anew.
+    const totals: ImportTotals = {
+      ...checked,
+      rowsRead: reading.rowsRead,
+      rowsRefused: reading.rowsRefused,
+      rowsRepaired: reading.rowsRepaired,
+      ...(await staging.totalRows(tx)),
+    };
     if (mapping.kind === 'sales') {
       if (createsUnknown) await staging.createMissingItems(tx);
       await staging.createMissingLocations(tx, createsUnknown ? null : wholeMarket);
@@ -183,34 +194,28 @@ async function mergeFile(context: JobContext, stored: StoredImport, folder: stri
   });
 }
 
-/** Pours the staged rows into this transaction's temporary tables and adds them up. */
-async function totalStaged(
-  tx: Tx,
-  mapping: ImportMapping,
-  reading: StagedReading,
-  stagingPath: string,
-): Promise<ImportTotals> {
+/** Pours the staged rows into this transaction's temporary tables. */
+async function pourStaged(tx: Tx, reading: StagedReading, stagingPath: string): Promise<void> {
   const { resolver } = reading;
   await staging.pourRows(tx, stagingPath, resolver.items, resolver.locations);
-  if (resolver.hasAliases) {
-    const repeated = await staging.removeRepeatedKeys(tx);
-    reading.rowsRefused += repeated.length;
-    for (const { row, code } of repeated) {
-      const detail = `${code} has this week and location already in an earlier row, under another spelling; that one is taken.`;
-      reading.findings.push({ ...toNotice('duplicate-row', detail, 'refused'), row });
-    }
+  if (!resolver.hasAliases) return;
+  const repeated = await staging.removeRepeatedKeys(tx);
+  reading.rowsRefused += repeated.length;
+  for (const { row, code } of repeated) {
+    const detail = `${code} has this week and location already in an earlier row, under another spelling; that one is taken.`;
+    reading.findings.push({ ...toNotice('duplicate-row', detail, 'refused'), row });
   }
-  const totals: ImportTotals = {
-    rowsRead: reading.rowsRead,
-    rowsRefused: reading.rowsRefused,
-    rowsRepaired: reading.rowsRepaired,
-    ...(await staging.totalRows(tx)),
-    byWeek: await staging.totalRowsByWeek(tx),
-  };
-  if (mapping.kind === 'calendar') {
-    Object.assign(totals, { units: 0, netValue: 0 }, await comparePlannedRows(tx, await staging.selectPlannedRows(tx)));
-  }
-  return totals;
+}
+
+/** Adds the poured rows up, beside what is held. */
+async function totalPoured(tx: Tx, mapping: ImportMapping, reading: StagedReading): Promise<ImportTotals> {
+  const { rowsRead, rowsRefused, rowsRepaired } = reading;
+  const compared =
+    mapping.kind === 'sales'
+      ? await staging.compareRows(tx)
+      : await comparePlannedRows(tx, await staging.selectPlannedRows(tx));
+  const byWeek = await staging.totalRowsByWeek(tx);
+  return { rowsRead, rowsRefused, rowsRepaired, ...(await staging.totalRows(tx)), ...compared, byWeek };
 }
 
 /** Rows that name what still isn't known stay out; the totals then tell what was merged. */

@@ -32,6 +32,8 @@ export async function pourRows(
   items: readonly FileItem[],
   locations: readonly FileLocation[],
 ): Promise<void> {
+  // The rows of a large file are sorted in memory; with PostgreSQL's default of 4 MB they would go through the disk.
+  await execute(tx, `set local work_mem = '64MB'`);
   await execute(
     tx,
     `create temporary table import_row (
@@ -77,26 +79,40 @@ export async function removeRepeatedKeys(tx: Tx): Promise<{ row: number; code: s
   );
 }
 
-/** Control totals of the rows poured, added up in decimals as a spreadsheet shows them, beside what is held for the same keys. */
-export async function totalRows(
-  tx: Tx,
-): Promise<Omit<ImportTotals, 'rowsRead' | 'rowsRefused' | 'rowsRepaired' | 'byWeek'>> {
-  const row = await selectRow<Awaited<ReturnType<typeof totalRows>>>(
+type RowTotals = Pick<
+  ImportTotals,
+  'rowsTaken' | 'weeks' | 'items' | 'locations' | 'units' | 'netValue' | 'firstWeek' | 'lastWeek'
+>;
+
+/** Control totals of the rows poured, added up in decimals as a spreadsheet shows them. */
+export async function totalRows(tx: Tx): Promise<RowTotals> {
+  const row = await selectRow<RowTotals>(
     tx,
-    `select count(*)::int as "rowsTaken", count(distinct r.week_start)::int as weeks, count(distinct r.item_position)::int as items,
-            count(distinct r.location_position)::int as locations, coalesce(sum(r.units::numeric), 0)::float8 as units,
-            coalesce(sum(coalesce(r.net_value, r.units * r.price)::numeric), 0)::float8 as "netValue",
-            to_char(min(r.week_start), 'YYYY-MM-DD') as "firstWeek", to_char(max(r.week_start), 'YYYY-MM-DD') as "lastWeek",
-            count(w.item_id)::int as "keysHeld",
-            count(w.item_id) filter (where (r.units, r.net_value, r.price, r.regular_price, r.feature, r.display, r.gap, r.days_open, r.mechanics)
+    `select count(*)::int as "rowsTaken", coalesce(sum(units::numeric), 0)::float8 as units,
+            coalesce(sum(coalesce(net_value, units * price)::numeric), 0)::float8 as "netValue",
+            to_char(min(week_start), 'YYYY-MM-DD') as "firstWeek", to_char(max(week_start), 'YYYY-MM-DD') as "lastWeek",
+            (select count(*) from (select from import_row group by week_start) w)::int as weeks,
+            (select count(*) from (select from import_row group by item_position) i)::int as items,
+            (select count(*) from (select from import_row group by location_position) l)::int as locations
+     from import_row`,
+  );
+  if (!row) throw new Error('an aggregate without groups always gives a row');
+  return row;
+}
+
+/** How many of the rows' keys are held, and for how many of these the rows say something else. */
+export async function compareRows(tx: Tx): Promise<Pick<ImportTotals, 'keysHeld' | 'keysChanged'>> {
+  const row = await selectRow<Pick<ImportTotals, 'keysHeld' | 'keysChanged'>>(
+    tx,
+    `select count(*)::int as "keysHeld",
+            count(*) filter (where (r.units, r.net_value, r.price, r.regular_price, r.feature, r.display, r.gap, r.days_open, r.mechanics)
               is distinct from (w.units, w.net_value, w.price, w.regular_price, w.feature, w.display, w.gap, w.days_open, w.mechanics))::int as "keysChanged"
      from import_row r
      join import_item i on i.position = r.item_position
      join import_location l on l.position = r.location_position
-     left join sales_week w on w.item_id = i.item_id and w.location_id = l.location_id and w.week_start = r.week_start`,
+     join sales_week w on w.item_id = i.item_id and w.location_id = l.location_id and w.week_start = r.week_start`,
   );
-  if (!row) throw new Error('an aggregate without groups always gives a row');
-  return row;
+  return row ?? { keysHeld: 0, keysChanged: 0 };
 }
 
 /** Units of the file by week, beside those held before for the same keys. */
@@ -198,23 +214,20 @@ export async function insertSalesRevision(
 
 const measures = 'units, net_value, price, regular_price, feature, display, mechanics, gap, days_open';
 
-/** Appends the poured rows to the entries and puts them in force. In key order: neighbouring index pages are then written once. */
+/** Appends the poured rows to the entries and puts them in force; the latter in key order, so that neighbouring index pages are written once. */
 export async function mergeSales(tx: Tx, importId: number, revisionId: number): Promise<void> {
-  const rows = `select $importId::int as import_id, $revisionId::int as revision_id, i.item_id, l.location_id, r.*
-     from import_row r
+  const source = `from import_row r
      join import_item i on i.position = r.item_position
-     join import_location l on l.position = r.location_position
-     order by i.item_id, l.location_id, r.week_start`;
+     join import_location l on l.position = r.location_position`;
+  const columns = `import_id, revision_id, item_id, location_id, week_start, ${measures}`;
+  const values = `$importId::int, $revisionId::int, i.item_id, l.location_id, r.week_start, ${measures}`;
+  await execute(tx, `insert into sales_entry (${columns}, file_row) select ${values}, file_row ${source}`, {
+    importId,
+    revisionId,
+  });
   await execute(
     tx,
-    `insert into sales_entry (import_id, revision_id, item_id, location_id, week_start, ${measures}, file_row)
-     select import_id, revision_id, item_id, location_id, week_start, ${measures}, file_row from (${rows}) ordered`,
-    { importId, revisionId },
-  );
-  await execute(
-    tx,
-    `insert into sales_week (import_id, revision_id, item_id, location_id, week_start, ${measures})
-     select import_id, revision_id, item_id, location_id, week_start, ${measures} from (${rows}) ordered
+    `insert into sales_week (${columns}) select ${values} ${source} order by i.item_id, l.location_id, r.week_start
      on conflict (item_id, location_id, week_start) do update set (import_id, revision_id, ${measures}) =
        (excluded.import_id, excluded.revision_id, ${measures
          .split(', ')
