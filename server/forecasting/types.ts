@@ -83,7 +83,11 @@ export interface SeriesForecast {
   p97_5: Float64Array;
   /** Per week: marks such as 'outside-seen-price', 'outside-seen-promotion', 'above-three-times-largest'. */
   marks: readonly (readonly string[])[];
-  /** Natural-log parts of the median per week by factor name (level, price, promotion, around, neighbours, season, holiday, trend, recent level). */
+  /**
+   * Natural-log parts of the median per week by factor name (level, price, promotion, around, neighbours, season, holiday, trend, recent level);
+   * of the mean where `method` is 'poisson' or plain. Those other than promotion, around and neighbours add up to ln of the base but for one
+   * factor from median to mean, the same in all weeks.
+   */
   parts: Readonly<Record<string, Float64Array>>;
 }
 

@@ -26,6 +26,7 @@ import { buildRollingFrame, type RollingFrame } from '../search/rolling-frame.ts
 import type { Specification } from '../search/specification.ts';
 import type { Finding, LineFit, LineInput, SeriesMethod } from '../types.ts';
 import { buildEnsemble, leaveOneOutResiduals, predictByEnsemble } from './ensemble.ts';
+import { tellAgainstBase } from './predicted-parts.ts';
 import { computeSmearing, type RolledCell } from './smearing.ts';
 
 const TIMES_LARGEST_SEEN = 3;
@@ -84,7 +85,7 @@ export function forecastByRegression(
       median: panel.hasZeros ? null : plan.linear.map(Math.exp),
       base: base.linear.map((value) => Math.exp(value) * smearing.other),
       marks: markCells(unseen[s]!, mean, series.largestUnits),
-      parts: plan.parts,
+      parts: tellAgainstBase(plan, base),
     };
     return plan.linear;
   });
@@ -144,6 +145,7 @@ const thinSpecification: Specification = {
   neighbourPromotion: false,
   attraction: false,
   around: false,
+  freshCut: false,
   fourierPairs: 0,
   holidays: false,
   trend: false,

@@ -66,3 +66,29 @@ export function predictSeries(
   for (const name of partNames) for (let h = 0; h < horizon; h++) linear[h]! += parts[name][h]!;
   return { linear, parts };
 }
+
+/**
+ * Parts of the plan told against those of the same weeks without promotions: level, price, season, holiday, trend and recent level are
+ * those of the base, with neighbours at their shelf prices in the level and what the last sold promotions left behind in the recent level;
+ * promotion, around and neighbours hold all that the plan has beyond it. The sum stays ln of the plan's forecast; that of the base's parts is ln of the base's.
+ */
+export function tellAgainstBase(plan: PredictedSeries, base: PredictedSeries): Record<PartName, Float64Array> {
+  const horizon = plan.linear.length;
+  const sum = (of: PredictedSeries['parts'], names: readonly PartName[]): Float64Array =>
+    Float64Array.from({ length: horizon }, (_, h) => names.reduce((total, name) => total + of[name][h]!, 0));
+  const beyond = (names: readonly PartName[]): Float64Array => {
+    const without = sum(base.parts, names);
+    return sum(plan.parts, names).map((value, h) => value - without[h]!);
+  };
+  return {
+    level: sum(base.parts, ['level', 'promotion', 'neighbours']),
+    price: base.parts.price,
+    promotion: beyond(['level', 'price', 'promotion', 'season', 'holiday', 'trend', 'recent level']),
+    around: beyond(['around']),
+    neighbours: beyond(['neighbours']),
+    season: base.parts.season,
+    holiday: base.parts.holiday,
+    trend: base.parts.trend,
+    'recent level': sum(base.parts, ['recent level', 'around']),
+  };
+}

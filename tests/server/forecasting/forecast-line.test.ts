@@ -48,6 +48,17 @@ describe('forecastLine', () => {
     }
   });
 
+  it('has parts of which those without promotions add up to ln of the base, but for one factor from median to mean', () => {
+    const basic = ['level', 'price', 'season', 'holiday', 'trend', 'recent level'];
+    const { series } = forecastLine(generateLine({ locations: 2 }));
+    const factors = series.flatMap(({ parts, base }) =>
+      [...base].map((units, h) => Math.log(units) - basic.reduce((sum, name) => sum + parts[name]![h]!, 0)),
+    );
+    for (const factor of factors) expect(factor).toBeCloseTo(factors[0]!, 10);
+    const uplifts = series.flatMap(({ base, mean }) => [...mean].map((units, h) => units / base[h]!));
+    expect(Math.max(...uplifts)).toBeGreaterThan(1.2);
+  });
+
   it('has a base equal to the mean where nothing of the line is promoted', () => {
     const input = generateLine();
     const quiet = {
