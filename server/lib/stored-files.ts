@@ -41,14 +41,6 @@ export async function storeFile(tx: Tx, path: string, fileName: string): Promise
   return { id: row.id, fileName, sizeBytes: size, sha256 };
 }
 
-export function findStoredFile(tx: Tx, id: number): Promise<StoredFile | null> {
-  return selectRow<StoredFile>(
-    tx,
-    'select id, file_name as "fileName", size_bytes::float8 as "sizeBytes", sha256 from stored_file where id = $id',
-    { id },
-  );
-}
-
 /** The bytes of a stored file, one chunk in memory at a time. The transaction must stay open until the stream ends. */
 export function readStoredFile(tx: Tx, id: number): Readable {
   async function* chunks(): AsyncGenerator<Buffer> {

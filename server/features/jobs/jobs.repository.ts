@@ -35,13 +35,6 @@ export function findActive(tx: Tx, subject: string): Promise<StoredJob | null> {
   );
 }
 
-/** The newest job of a subject, whatever its state. */
-export function findNewest(tx: Tx, subject: string): Promise<StoredJob | null> {
-  return selectRow<StoredJob>(tx, `select ${columns} from job where subject = $subject order by id desc limit 1`, {
-    subject,
-  });
-}
-
 /** Writes the job and hands it to the queue in the same transaction. null if the subject already has an active job. */
 export async function insertJob(
   tx: Tx,

@@ -27,11 +27,6 @@ export function changeSettings(database: Database, actor: Actor, change: ChangeS
   });
 }
 
-/** Fixes the first day of the trading week; called by the first import, in its transaction. */
-export async function fixFirstWeekday(tx: Tx, firstWeekday: number): Promise<void> {
-  await repository.writeSetting(tx, 'firstWeekday', firstWeekday);
-}
-
 export function listReasons(database: Database): Promise<ReasonList> {
   return inTransaction(database, async (tx) => ({
     reasons: await repository.listReasons(tx),

@@ -20,13 +20,6 @@ import { ProblemError, request } from '../../lib/api.ts';
 
 const pollMs = 10_000;
 
-export const linePlanQuery = (lineId: number, historyWeeks: number) =>
-  queryOptions({
-    queryKey: ['plan', 'line', lineId, 'plan', historyWeeks],
-    queryFn: ({ signal }) => request(LinePlan, `/plan/lines/${lineId}`, { query: { historyWeeks }, signal }),
-    refetchInterval: 3 * pollMs,
-  });
-
 /** The line's versions; asked again and again while a page is open, so that others' saves show without a reload. */
 export const versionsQuery = (lineId: number) =>
   queryOptions({

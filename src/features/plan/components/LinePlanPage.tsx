@@ -6,9 +6,9 @@ import { ButtonLink } from '../../../components/Button.tsx';
 import { Page, PageHead } from '../../../components/Page.tsx';
 import { EmptyState, QueryStates } from '../../../components/states.tsx';
 import { useCategories, withCategory } from '../../../lib/categories.ts';
+import { linePlanQuery } from '../../../lib/line-plan.ts';
 import { useTitle } from '../../../lib/use-title.ts';
 import { historyWeeksToAsk } from '../grid-columns.ts';
-import { linePlanQuery } from '../queries.ts';
 import { usePageState } from '../use-page-state.ts';
 import { ForecastStart } from './ForecastStart.tsx';
 import { LinePlanView } from './LinePlanView.tsx';
@@ -25,6 +25,7 @@ export function LinePlanPage() {
   const query = useQuery({
     ...linePlanQuery(lineId, historyWeeksToAsk(page.from, seam)),
     enabled: Number.isInteger(lineId) && lineId > 0,
+    refetchInterval: 30_000,
     // While more history is asked for, what is on screen stays.
     placeholderData: (previous) => (previous?.line.id === lineId ? previous : undefined),
   });
