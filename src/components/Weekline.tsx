@@ -12,9 +12,9 @@ import {
   type Handle,
   listBandWeeks,
   moveHandle,
+  moveRange,
   stepOfKey,
   toPositions,
-  toRange,
   type WeekRange,
 } from './weekline-geometry.ts';
 
@@ -235,7 +235,9 @@ function Band({ weeks, soldWeeks, width, range, onRangeChange, caption }: BandPr
     positions: [first, last] as [number, number],
     pitch,
     width,
-    onMove: onRangeChange && ((positions: [number, number]) => onRangeChange(toRange(positions, firstWeek))),
+    onMove:
+      onRangeChange &&
+      ((positions: [number, number]) => onRangeChange(moveRange(range, [first, last], positions, handle))),
   });
   const words = caption ?? t('weekline.shown', { count: weeksBetween(range.firstWeek, range.lastWeek) + 1 });
   const isFlipped = windowRight + handleWidth > width;

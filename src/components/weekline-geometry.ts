@@ -65,10 +65,6 @@ export function toPositions(range: WeekRange, firstWeek: string, weeks: number):
   return [first, Math.max(first, clamp(weeksBetween(firstWeek, range.lastWeek)))];
 }
 
-export function toRange([first, last]: [number, number], firstWeek: string): WeekRange {
-  return { firstWeek: addWeeks(firstWeek, first), lastWeek: addWeeks(firstWeek, last) };
-}
-
 export type Handle = 'first' | 'last' | 'both';
 
 /** Moves one handle (or both together) by whole weeks; handles never cross and the band is never left. */
@@ -82,6 +78,23 @@ export function moveHandle(
   if (handle === 'last') return [first, Math.max(first, Math.min(weeks - 1, last + by))];
   const step = Math.max(-first, Math.min(weeks - 1 - last, by));
   return [first + step, last + step];
+}
+
+/**
+ * The range after a handle went from one pair of positions to another. The other end stays where the page has it, even where that lies
+ * beyond the band.
+ */
+export function moveRange(
+  range: WeekRange,
+  [firstBefore, lastBefore]: [number, number],
+  [first, last]: [number, number],
+  handle: Handle,
+): WeekRange {
+  const firstWeek = addWeeks(range.firstWeek, first - firstBefore);
+  const lastWeek = addWeeks(range.lastWeek, last - lastBefore);
+  if (handle === 'first') return { firstWeek, lastWeek: range.lastWeek };
+  if (handle === 'last') return { firstWeek: range.firstWeek, lastWeek };
+  return { firstWeek, lastWeek };
 }
 
 /** Weeks that a key moves a slider by; null for keys that it doesn't know. */

@@ -4,9 +4,9 @@ import {
   findRuns,
   listBandWeeks,
   moveHandle,
+  moveRange,
   stepOfKey,
   toPositions,
-  toRange,
 } from '../../../src/components/weekline-geometry.ts';
 
 const sold = Array.from({ length: 60 }, (_, index) => 100 + index);
@@ -63,10 +63,18 @@ describe('the handles', () => {
     ]);
   });
 
-  it('translate weeks into positions and back', () => {
-    const positions = toPositions({ firstWeek: '2025-10-20', lastWeek: '2025-11-03' }, '2025-10-06', 62);
-    expect(positions).toEqual([2, 4]);
-    expect(toRange(positions, '2025-10-06')).toEqual({ firstWeek: '2025-10-20', lastWeek: '2025-11-03' });
+  it('translate weeks into positions', () => {
+    expect(toPositions({ firstWeek: '2025-10-20', lastWeek: '2025-11-03' }, '2025-10-06', 62)).toEqual([2, 4]);
+  });
+
+  it('leave the other end where the page has it, even beyond the band', () => {
+    const range = { firstWeek: '2026-11-23', lastWeek: '2027-03-22' };
+    expect(moveRange(range, [59, 61], [57, 61], 'first')).toEqual({
+      firstWeek: '2026-11-09',
+      lastWeek: '2027-03-22',
+    });
+    expect(moveRange(range, [59, 61], [59, 60], 'last')).toEqual({ firstWeek: '2026-11-23', lastWeek: '2027-03-15' });
+    expect(moveRange(range, [59, 61], [58, 60], 'both')).toEqual({ firstWeek: '2026-11-16', lastWeek: '2027-03-15' });
   });
 
   it('clamp a range that reaches beyond the band', () => {
