@@ -14,8 +14,11 @@ export function usePageState(): [PageState, (change: Partial<PageState>) => void
   const written = useRef(search.toString());
   useEffect(() => {
     if (search.toString() === written.current) return;
+    const before = readPageState(new URLSearchParams(written.current));
     written.current = search.toString();
-    setState(readPageState(search));
+    const now = readPageState(search);
+    // Other parts of the address, such as the category, are not this page's.
+    if (JSON.stringify(before) !== JSON.stringify(now)) setState(now);
   }, [search]);
   useEffect(() => {
     const next = writePageState(search, state).toString();

@@ -21,6 +21,7 @@ import {
   shortWeekLabel,
   weekLabel,
 } from '../../../lib/format.ts';
+import { readToday } from '../../../lib/today.ts';
 import { useTitle } from '../../../lib/use-title.ts';
 import { sumLines } from '../category-rows.ts';
 import { buildColumns, defaultWindow } from '../grid-columns.ts';
@@ -185,7 +186,7 @@ function CategoryPlanView({ plan, planFirstWeek }: { plan: CategoryPlan; planFir
     [rows, columns],
   );
   const { round } = plan;
-  const isLate = round !== null && round.due < new Date().toISOString().slice(0, 10);
+  const isLate = round !== null && round.due < readToday();
   return (
     <Page
       weekline={

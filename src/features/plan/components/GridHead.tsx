@@ -57,6 +57,9 @@ export const GridHead = memo(function GridHead(props: GridHeadProps) {
           const column = columns[at];
           if (!column) return null;
           const holidays = holidaysOf.get(column.weekStart) ?? [];
+          const promoted = props.pennants
+            .filter(({ first, last }) => at >= first && at <= last)
+            .map(({ name }) => name);
           const isChosen = at >= props.selectedFirst && at <= props.selectedLast;
           return (
             <div
@@ -74,6 +77,9 @@ export const GridHead = memo(function GridHead(props: GridHeadProps) {
                 {column.label}
               </span>
               <span className="plan-week-date">{formatDate(column.weekStart)}</span>
+              {promoted.length > 0 && (
+                <span className="sr-only">{t('grid.promoted', { names: promoted.join(', ') })}</span>
+              )}
               {holidays.length > 0 && (
                 <span className="plan-holiday">
                   <span className="sr-only">{holidays.map(({ name }) => name).join(', ')}</span>
@@ -104,7 +110,7 @@ export const GridHead = memo(function GridHead(props: GridHeadProps) {
             );
           })}
       </div>
-      <ul aria-label={t('grid.promotions')}>
+      <div aria-hidden="true">
         {props.pennants
           .filter((pennant) => inView(pennant.first, pennant.last))
           .map((pennant) => {
@@ -117,7 +123,7 @@ export const GridHead = memo(function GridHead(props: GridHeadProps) {
             const isBeside = nameWidth > width - 14 && nameWidth < free;
             const words = `${pennant.name}, ${formatDate(pennant.firstWeek)}`;
             return (
-              <li
+              <div
                 key={`${pennant.name}/${pennant.firstWeek}`}
                 className="plan-pennant"
                 style={{ left, width, top: pennantsTop + pennant.lane * laneHeight }}
@@ -133,10 +139,10 @@ export const GridHead = memo(function GridHead(props: GridHeadProps) {
                   <path d="M1 .5V17" stroke="var(--turmeric)" strokeWidth="1.6" />
                 </svg>
                 <span style={isBeside ? { left: width + 4, width: nameWidth } : undefined}>{pennant.name}</span>
-              </li>
+              </div>
             );
           })}
-      </ul>
+      </div>
     </div>
   );
 });

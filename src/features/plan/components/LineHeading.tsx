@@ -4,6 +4,7 @@ import type { LinePlan } from '../../../../shared/contracts/plan.ts';
 import { Button } from '../../../components/Button.tsx';
 import { StateRoute } from '../../../components/StateRoute.tsx';
 import { formatDate, formatInstant, formatWeekSpan, weekLabel } from '../../../lib/format.ts';
+import { readToday } from '../../../lib/today.ts';
 import { HandOverDialog, type HandOverKind } from './HandOverDialogs.tsx';
 
 /** Name, version line and the way from draft to locked with what this person may do on it. */
@@ -61,9 +62,7 @@ export function LineHeading({ plan, hasEdits }: { plan: LinePlan; hasEdits: bool
           {round && (
             <>
               {' '}
-              <span
-                className={round.due < new Date().toISOString().slice(0, 10) && state === 'draft' ? 'text-madder' : ''}
-              >
+              <span className={round.due < readToday() && state === 'draft' ? 'text-madder' : ''}>
                 {t('heading.round', {
                   first: weekLabel(round.firstWeek),
                   last: weekLabel(round.lastWeek),

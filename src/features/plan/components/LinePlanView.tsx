@@ -592,7 +592,10 @@ export function LinePlanView({
     >
       <div className="plan-work">
         <div className="plan-main">
-          <div className="plan-scroll" style={contentHeight}>
+          <div
+            className={isWhyOpen || page.isVersionsOpen ? 'plan-scroll has-drawer' : 'plan-scroll'}
+            style={contentHeight}
+          >
             <LineHeading plan={plan} hasEdits={hasEdits} />
             {readsVersion !== null && (
               <div role="status" className="mb-2 flex flex-wrap items-center gap-x-4 border-l-2 border-plum py-1 pl-3">

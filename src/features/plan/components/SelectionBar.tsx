@@ -35,7 +35,7 @@ export function SelectionBar({
   return (
     <section
       aria-label={t('selection.label')}
-      className="flex min-h-12 flex-wrap items-center gap-x-[18px] gap-y-1 border-t border-moss bg-moss-tint px-6 py-1"
+      className="plan-bar flex min-h-12 flex-wrap items-center gap-x-[18px] gap-y-1 border-t border-moss bg-moss-tint px-6 py-1"
     >
       {figures === null ? (
         <p className="text-soft">{t('selection.none')}</p>

@@ -10,6 +10,7 @@ import { ForkMark, PennantMark, RingMark } from '../../../components/marks.tsx';
 import {
   formatFactor,
   formatInstant,
+  formatMoney,
   formatNumber,
   formatPercent,
   formatSigned,
@@ -17,6 +18,7 @@ import {
   shortWeekLabel,
   weekLabel,
 } from '../../../lib/format.ts';
+import { useCurrency } from '../../../lib/settings.ts';
 import type { GridColumn } from '../grid-columns.ts';
 import type { GridRow } from '../grid-rows.ts';
 import { findRange, rowOfVersion, type LineFigures, type RowFigures } from '../line-figures.ts';
@@ -87,6 +89,7 @@ function SoldCell({ plan, row, column, figures }: WhyDrawerProps) {
 
 function PlannedCell({ plan, row, column, figures, lineFigures, pending, describeScope }: WhyDrawerProps) {
   const { t } = useTranslation('plan');
+  const currency = useCurrency();
   const week = column.index;
   const series = row.seriesIndexes.flatMap((index) => plan.series[index] ?? []);
   const sum = (values: (number | null | undefined)[]) => values.reduce<number>((total, each) => total + (each ?? 0), 0);
@@ -194,13 +197,16 @@ function PlannedCell({ plan, row, column, figures, lineFigures, pending, describ
             <ForkMark /> {t('why.outside')}
           </p>
         )}
-        {netValue !== null && <p className="text-soft">{t('why.netValue', { value: formatNumber(netValue) })}</p>}
+        {netValue !== null && (
+          <p className="text-soft">{t('why.netValue', { value: formatMoney(netValue, currency, 0) })}</p>
+        )}
         {averaged > 0 && (
           <p className="border-l-2 border-turmeric pl-2">
             {series.length === 1 ? t('why.averageOne') : t('why.average', { count: averaged, of: series.length })}
           </p>
         )}
         <Promotions plan={plan} row={row} weekStart={column.weekStart} uplift={uplift} />
+        {!isPromoted && Math.abs(uplift) > 1e-9 && <p>{t('why.around')}</p>}
       </div>
 
       <h3 className="mt-3 text-[14px]/[18px]">{t('why.range')}</h3>
