@@ -108,6 +108,40 @@ export function selectSeriesWeeks(
   );
 }
 
+export interface ItemWeekRow {
+  weekStart: string;
+  units: number;
+  isPromoted: boolean;
+  depth: number | null;
+  feature: number;
+  display: number;
+}
+
+/**
+ * Weeks of one item of a line over the locations, ascending, before endWeek: promoted where at least half the locations were, with the price cut over
+ * those that were (by units, where prices are known), and the shares of locations with feature and display.
+ */
+export function selectItemWeeks(
+  tx: Tx,
+  given: { lineId: number; itemId: number; locationIds: readonly number[]; endWeek: string },
+): Promise<ItemWeekRow[]> {
+  return selectRows<ItemWeekRow>(
+    tx,
+    `with sold as (
+       select w.week_start, w.units, w.price, w.regular_price, w.feature, w.display, ${isPromoted} as is_promoted
+       from item_membership m
+       join sales_week w on w.item_id = m.item_id and w.week_start >= m.valid_from and (m.valid_to is null or w.week_start < m.valid_to)
+       where m.line_id = $lineId and m.item_id = $itemId and w.location_id = any($locationIds::int[]) and w.week_start < $endWeek::date
+     )
+     select to_char(week_start, 'YYYY-MM-DD') as "weekStart", sum(units) as units, avg(is_promoted::int) >= 0.5 as "isPromoted",
+            1 - sum(price * units) filter (where is_promoted and units > 0 and price > 0 and regular_price > 0)
+              / sum(regular_price * units) filter (where is_promoted and units > 0 and price > 0 and regular_price > 0) as depth,
+            avg(coalesce(feature, 0))::float8 as feature, avg(coalesce(display, 0))::float8 as display
+     from sold group by week_start order by week_start`,
+    given,
+  );
+}
+
 export interface WeekTotalRow {
   weekStart: string;
   units: number;

@@ -1,4 +1,4 @@
-import { mkdirSync } from 'node:fs';
+import { mkdtempSync, rmSync } from 'node:fs';
 import { rm } from 'node:fs/promises';
 import { tmpdir } from 'node:os';
 import path from 'node:path';
@@ -17,11 +17,9 @@ const largestFileBytes = 200 * 1024 * 1024;
 const ListQuery = z.object({ categoryId: IdText.optional() });
 
 export function salesRouter({ database }: Deps): Router {
-  const uploadFolder = path.join(tmpdir(), 'fairweek-uploads');
-  mkdirSync(uploadFolder, { recursive: true, mode: 0o700 });
   // The types of multer don't know `defParamCharset` yet.
   const options: multer.Options & { defParamCharset: string } = {
-    dest: uploadFolder,
+    storage: multer.diskStorage({ destination: (_request, _file, done) => done(null, openUploadFolder()) }),
     defParamCharset: 'utf8',
     limits: { fileSize: largestFileBytes, files: 1, fields: 5, parts: 6 },
   };
@@ -78,6 +76,18 @@ export function salesRouter({ database }: Deps): Router {
   });
 
   return router;
+}
+
+let uploadFolder: string | null = null;
+
+/** A folder of this process alone, gone when it ends: another user of the machine can neither look in nor stand in the way. */
+function openUploadFolder(): string {
+  if (uploadFolder === null) {
+    const folder = mkdtempSync(path.join(tmpdir(), 'fairweek-uploads-'));
+    process.once('exit', () => rmSync(folder, { recursive: true, force: true }));
+    uploadFolder = folder;
+  }
+  return uploadFolder;
 }
 
 function receive(

@@ -89,6 +89,17 @@ export async function salesTotalsByWeek(
   });
 }
 
+/** Weeks of one item of a line before endWeek, ascending, summed over the locations, with their promotion; depth null where prices are unknown. */
+export function itemSalesByWeek(
+  tx: Tx,
+  lineId: number,
+  itemId: number,
+  locationIds: readonly number[],
+  endWeek: string,
+): Promise<repository.ItemWeekRow[]> {
+  return repository.selectItemWeeks(tx, { lineId, itemId, locationIds, endWeek });
+}
+
 /** Units of a category, or of one line of it, by week, ascending, for the weekline. */
 export function categorySalesByWeek(
   tx: Tx,

@@ -544,6 +544,37 @@ describe('a failure at the very end', () => {
   });
 });
 
+describe('sales of weeks that are locked in a plan', () => {
+  it('are pointed out, and taken all the same', async () => {
+    const { categoryId, lineId, itemCodes } = await makeRange(deps.database, { items: 1 });
+    const { importer, person } = await planIn(categoryId);
+    await deps.database.pool.query(
+      `insert into lock_event (line_id, first_week, last_week, locked, version, actor_id) values ($1, '2026-01-12', '2026-01-26', true, 1, $2)`,
+      [lineId, person.id],
+    );
+    const weeks = ['2026-W02', '2026-W03', '2026-W04'];
+    const rows = weeks.map((week) => `${week},${itemCodes[0]},3`);
+    const read = await importer.upload('locked.csv', `week,item,units\n${rows.join('\n')}\n`);
+    expect(read.lockedWeeks).toEqual(['2026-01-12', '2026-01-19']);
+    expect((await importer.accept(read.id)).state).toBe('done');
+    expect(await inForce(categoryId)).toHaveLength(3);
+  });
+});
+
+describe('a request without a file', () => {
+  it('is told which field to fill', async () => {
+    const { categoryId } = await makeRange(deps.database, { items: 1 });
+    const { cookie } = await planIn(categoryId);
+    const bare = await request(app).post('/api/imports').set('cookie', cookie).field('note', 'nothing attached');
+    expect(problemOf(bare)).toMatchObject({ type: '/problems/invalid-request', status: 422 });
+    const wrongField = await request(app)
+      .post('/api/imports')
+      .set('cookie', cookie)
+      .attach('workbook', Buffer.from('week,item,units'), 'sales.csv');
+    expect(problemOf(wrongField)).toMatchObject({ type: '/problems/invalid-request', status: 422 });
+  });
+});
+
 describe('a file with characters that a database can’t store', () => {
   it('is read without them', async () => {
     const { categoryId, itemCodes } = await makeRange(deps.database, { items: 1 });
