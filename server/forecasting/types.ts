@@ -1,3 +1,5 @@
+import type { FitDiagnosis } from './diagnosis/diagnose-fit.ts';
+
 /**
  * What the forecasting arithmetic takes and gives. No database, HTTP or clock in it.
  * Weeks are `weekStart` strings (`YYYY-MM-DD`, first day of the trading week). NaN stands for "unknown" in number arrays.
@@ -136,6 +138,8 @@ export interface LineFit {
   /** Scores of the candidate specifications, best first. */
   scores: readonly { specification: string; crps: number; wape: number }[];
   findings: readonly Finding[];
+  /** Only where it was asked for. */
+  diagnosis?: FitDiagnosis;
   seconds: number;
 }
 

@@ -31,6 +31,8 @@ create table fit (
   scores jsonb not null,
   summary jsonb not null,
   findings jsonb not null,
+  -- Errors, collinearity, tests, influence and own evidence; null where nothing was fitted.
+  diagnosis jsonb,
   at timestamptz not null default now(),
   unique (run_id, line_id)
 );

@@ -51,7 +51,7 @@ export async function findNewestFit(tx: Tx, lineId: number): Promise<LineFitView
   const row = await selectRow<{ fit: LineFitView['fit'] }>(
     tx,
     `select json_build_object('id', f.id, 'at', f.at, 'salesTo', r.sales_to, 'specification', f.specification, 'coefficients', f.coefficients,
-                              'scores', f.scores, 'findings', f.findings)::jsonb || f.summary as fit
+                              'scores', f.scores, 'findings', f.findings, 'diagnosis', f.diagnosis)::jsonb || f.summary as fit
      from fit f join forecast_run r on r.id = f.run_id where f.line_id = $lineId order by f.id desc limit 1`,
     { lineId },
   );

@@ -366,6 +366,7 @@ function describeFit({ fit, findings }: LineForecast): NewFit {
       scores: [],
       summary: { rows: 0, rank: 0, sigma: 0, rSquared: 0, aic: 0, seconds: 0 },
       findings,
+      diagnosis: null,
     };
   }
   const { specification, coefficients, factorR, scores, rows, rank, sigma, rSquared, aic, seconds } = fit;
@@ -376,6 +377,7 @@ function describeFit({ fit, findings }: LineForecast): NewFit {
     scores,
     summary: { rows, rank, sigma, rSquared, aic, seconds },
     findings: withoutRepeats([...fit.findings, ...findings]),
+    diagnosis: fit.diagnosis ?? null,
   };
 }
 

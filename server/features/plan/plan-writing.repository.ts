@@ -181,6 +181,8 @@ export interface NewFit {
   /** rows, rank, sigma, rSquared, aic, seconds. */
   summary: Readonly<Record<string, number>>;
   findings: readonly unknown[];
+  /** null where nothing was fitted. */
+  diagnosis: unknown;
 }
 
 /** Writes what a run says of one line: its fit (null where nothing was fitted), series and totals. */
@@ -198,9 +200,11 @@ export async function insertLineRun(
   await execute(
     tx,
     `with kept_fit as (
-       insert into fit (run_id, line_id, sales_revision_id, calendar_revision_id, specification, coefficients, factor_r, scores, summary, findings)
-       select $runId, $lineId, $salesRevision, $calendarRevision, f.specification, f.coefficients, f."factorR", f.scores, f.summary, f.findings
-       from jsonb_to_record($fit::jsonb) as f(specification jsonb, coefficients jsonb, "factorR" float8[], scores jsonb, summary jsonb, findings jsonb)
+       insert into fit (run_id, line_id, sales_revision_id, calendar_revision_id, specification, coefficients, factor_r, scores, summary, findings, diagnosis)
+       select $runId, $lineId, $salesRevision, $calendarRevision, f.specification, f.coefficients, f."factorR", f.scores, f.summary, f.findings,
+              f.diagnosis
+       from jsonb_to_record($fit::jsonb) as f(specification jsonb, coefficients jsonb, "factorR" float8[], scores jsonb, summary jsonb, findings jsonb,
+              diagnosis jsonb)
      ), kept_series as (
        insert into run_series (run_id, line_id, item_id, location_id, first_week, unit_step, method, model, mean, base, p2_5, p10, p50, p90, p97_5, price, marks, parts)
        select $runId, $lineId, s."itemId", s."locationId", $firstWeek::date, s."unitStep", s.method, s.model, s.mean, s.base, s.p2_5, s.p10, s.p50, s.p90,

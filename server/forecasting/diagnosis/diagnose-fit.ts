@@ -16,7 +16,7 @@ import {
   type CovarianceFit,
 } from '../../../shared/statistics/regression/covariance.ts';
 import { summariseFit } from '../../../shared/statistics/regression/fit-summary.ts';
-import { fitLeastSquares } from '../../../shared/statistics/regression/least-squares.ts';
+import { fitLeastSquaresFast } from '../../../shared/statistics/regression/fast-least-squares.ts';
 import type { LeastSquaresInput } from '../../../shared/statistics/regression/types.ts';
 import type { EffectMember, FittedRows } from './fitted-rows.ts';
 import { partialOutDeviations } from './line-slopes.ts';
@@ -199,7 +199,7 @@ function describeCondition(rows: FittedRows): Condition {
   const table = orNull((): FitDiagnosis['condition'] => {
     if (line.effects.length === 0) return [];
     const input = { ...line.input, weights: rows.weights };
-    const fit = fitLeastSquares(input);
+    const fit = fitLeastSquaresFast(input);
     const effectOf = fit.kept.map((column) => line.effects[column]!);
     computeVarianceInflation(input, fit).forEach((factor, k) => (varianceInflation[effectOf[k]!] = factor));
     const { indices, proportions } = analyseCondition(fit);

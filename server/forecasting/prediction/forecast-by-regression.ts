@@ -1,3 +1,4 @@
+import { diagnoseLine } from '../diagnosis/diagnose-line.ts';
 import type { LinePanel } from '../features/line-panel.ts';
 import { markUnseen } from '../features/unseen-marks.ts';
 import { reportFit } from '../fit/fit-report.ts';
@@ -35,6 +36,8 @@ const TIMES_LARGEST_SEEN = 3;
 export interface SearchChoice {
   specification?: Specification;
   carry?: CarryRule;
+  /** Whether the kept fit is diagnosed, which forecasts alone don't need. */
+  isDiagnosed?: boolean;
 }
 
 /** Forecast of one series before its ranges: means, base and parts, per week of the horizon. */
@@ -124,7 +127,8 @@ export function forecastByRegression(
     crps: score.crps,
     wape: score.wape,
   }));
-  return reportFit(panel, averaged, carry, kept, influences, scores, findings);
+  const fit = reportFit(panel, averaged, carry, kept, influences, scores, findings);
+  return choice.isDiagnosed ? { ...fit, diagnosis: diagnoseLine(panel, winner.model, kept) } : fit;
 }
 
 function choose(panel: LinePanel, input: LineInput, frame: RollingFrame, choice: SearchChoice): ChosenSpecification {

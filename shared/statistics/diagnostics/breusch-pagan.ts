@@ -1,5 +1,6 @@
 import { computeChiSquareTail } from '../distributions/chi-square.ts';
 import { InvalidInputError, UndefinedStatisticError } from '../errors.ts';
+import { fitLeastSquaresFast } from '../regression/fast-least-squares.ts';
 import { fitLeastSquares } from '../regression/least-squares.ts';
 import type { LeastSquaresInput } from '../regression/types.ts';
 
@@ -70,7 +71,7 @@ export function testBreuschPaganWithinSeries(
   }
   let rank = 0;
   if (columns > 0) {
-    const fit = fitLeastSquares({ design, rows, columns, response: centred });
+    const fit = fitLeastSquaresFast({ design, rows, columns, response: centred });
     rank = fit.rank;
     explained += centred.reduce((sum, value) => sum + value * value, 0) - fit.residualSumOfSquares;
   }
