@@ -8,6 +8,7 @@ import {
   type DemoCategory,
   type DemoItem,
   type DemoLine,
+  type DemoLocation,
 } from './company.ts';
 import { drawGenerator, type Draw } from './random.ts';
 
@@ -149,14 +150,14 @@ function tellStories(line: DemoLine, draw: Draw): ItemStory[] {
 }
 
 /** All sales rows of a category over the whole history, in the order line, item, location, week. Same numbers at every call. */
-export function generateSales(category: DemoCategory): SalesRow[] {
+export function generateSales(category: DemoCategory, at: readonly DemoLocation[] = locations): SalesRow[] {
   const rows: SalesRow[] = [];
   for (const line of category.lines) {
     const draw = drawGenerator(seed, `${category.slug}/${line.name}`);
     const stories = tellStories(line, draw);
     const shocks = Array.from({ length: historyWeeks }, () => 0.05 * draw.normal());
     for (const { item, regularPrices, promotions } of stories) {
-      for (const location of locations) {
+      for (const location of at) {
         const level = Math.log(item.units * location.size) + 0.12 * draw.normal();
         let wander = 0;
         for (let week = item.fromWeek ?? 0; week < Math.min(historyWeeks, item.toWeek ?? historyWeeks); week += 1) {
@@ -209,7 +210,11 @@ export function generateSales(category: DemoCategory): SalesRow[] {
 }
 
 /** Planned promotions and regular prices from the week `from` of the story on: a row where an item is promoted or its price changes. */
-export function generateCalendar(category: DemoCategory, from: number): CalendarRow[] {
+export function generateCalendar(
+  category: DemoCategory,
+  from: number,
+  at: readonly DemoLocation[] = locations,
+): CalendarRow[] {
   const rows: CalendarRow[] = [];
   for (const line of category.lines) {
     const stories = tellStories(line, drawGenerator(seed, `${category.slug}/${line.name}`));
@@ -221,7 +226,7 @@ export function generateCalendar(category: DemoCategory, from: number): Calendar
         const isChange = regularPrice !== regularPrices[week - 1];
         if (promotion === noPromotion && !isChange) continue;
         const weekStart = addWeeks(firstWeek, week);
-        for (const location of locations) {
+        for (const location of at) {
           rows.push({
             week: weekLabel(weekStart),
             weekStart,

@@ -63,7 +63,7 @@ function installPackages() {
 
 const commandFile = join(cliFolder, `${command}.ts`);
 if (!command || !/^[a-z][a-z-]*$/.test(command) || !existsSync(commandFile)) {
-  refuse(`There is no command “${command ?? ''}”. Try: npm start, npm test, npm run backtest.`);
+  refuse(`There is no command “${command ?? ''}”. Try: npm start, npm test, npm run backtest, npm run bench.`);
 }
 checkNode();
 if (!isInstalled()) installPackages();

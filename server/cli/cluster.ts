@@ -19,6 +19,7 @@ import {
   needsPostgresUser,
   prepareDataFolder,
   saveInstallation,
+  type ClusterPurpose,
   type DatabaseRole,
   type Installation,
 } from './data-folder.ts';
@@ -48,10 +49,14 @@ interface Place {
 }
 
 const host = '127.0.0.1';
-const firstPorts = { start: 54310, test: 54510 };
+const firstPorts = { start: 54310, test: 54510, bench: 54710 };
+
+const servingSettings = ['max_connections = 100', 'shared_buffers = 256MB', 'synchronous_commit = on'];
 
 const settingsFor = {
-  start: ['max_connections = 100', 'shared_buffers = 256MB', 'synchronous_commit = on'],
+  start: servingSettings,
+  // What is measured must be what people get.
+  bench: servingSettings,
   test: [
     'max_connections = 200',
     'shared_buffers = 256MB',
@@ -72,7 +77,7 @@ export function databaseUrl({ port, rolePasswords }: ClusterAccess, role: Databa
  * Makes (once) and starts the checkout's own cluster on loopback: TCP only, scram, data checksums, four roles. Repeatable: a running one is
  * taken over, one that died is started again. Throws PlainFailure with what the person can do.
  */
-export async function ensureCluster(purpose: 'start' | 'test'): Promise<Cluster> {
+export async function ensureCluster(purpose: ClusterPurpose): Promise<Cluster> {
   const dataFolder = prepareDataFolder(purpose);
   return whileAlone(join(dataFolder, 'starting.lock'), async () => {
     const place = findPlace(dataFolder);
@@ -130,7 +135,7 @@ async function createCluster(place: Place): Promise<void> {
   }
 }
 
-async function startCluster(place: Place, purpose: 'start' | 'test'): Promise<void> {
+async function startCluster(place: Place, purpose: ClusterPurpose): Promise<void> {
   const { binaries, databaseFolder, logFile, installation } = place;
   await clearPidFile(place);
   const remembered = installation.port;

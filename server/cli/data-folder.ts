@@ -8,6 +8,9 @@ import { PlainFailure } from './plain-failure.ts';
 /** The folder that holds the checkout: two above this file's. */
 export const projectFolder = dirname(dirname(import.meta.dirname));
 
+/** Each has a cluster of its own, so that they run beside one another. */
+export type ClusterPurpose = 'start' | 'test' | 'bench';
+
 export const databaseRoles = ['owner', 'fairweek_migrator', 'fairweek_application', 'fairweek_reader'] as const;
 export type DatabaseRole = (typeof databaseRoles)[number];
 
@@ -31,10 +34,10 @@ export function needsPostgresUser(): boolean {
 }
 
 /**
- * Where a cluster and its secrets live: `.data` (or `.data/test`) of the checkout; if PostgreSQL's own user can't walk there,
+ * Where a cluster and its secrets live: `.data` (or `.data/<purpose>`) of the checkout; if PostgreSQL's own user can't walk there,
  * /var/lib/fairweek/<checkout id>. Created if missing.
  */
-export function prepareDataFolder(purpose: 'start' | 'test'): string {
+export function prepareDataFolder(purpose: ClusterPurpose): string {
   const inner = purpose === 'start' ? '' : purpose;
   const folder = canPostgresUserReach(projectFolder)
     ? join(projectFolder, '.data', inner)

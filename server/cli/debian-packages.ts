@@ -2,16 +2,18 @@ import { spawnSync } from 'node:child_process';
 import { existsSync } from 'node:fs';
 import { findPostgresBinaries } from './postgres-binaries.ts';
 import { PlainFailure } from './plain-failure.ts';
-import { chromiumPath, officePath, systemPythonPath } from './system-programs.ts';
+import { chromiumPath, officePath, rscriptPath, systemPythonPath } from './system-programs.ts';
+
+type Purpose = 'start' | 'test' | 'bench';
 
 interface SystemPackage {
   /** Debian's name. */
   name: string;
-  neededBy: 'start' | 'test';
+  neededBy: Purpose;
   isPresent: () => boolean;
 }
 
-/** Everything that Fairweek or its tests need from the system beside Node: the only list of it. */
+/** Everything that Fairweek, its tests or its bench need from the system beside Node: the only list of it. */
 const systemPackages: readonly SystemPackage[] = [
   { name: 'postgresql', neededBy: 'start', isPresent: () => findPostgresBinaries() !== undefined },
   { name: 'chromium', neededBy: 'test', isPresent: () => existsSync(chromiumPath) },
@@ -21,6 +23,8 @@ const systemPackages: readonly SystemPackage[] = [
     neededBy: 'test',
     isPresent: () => runsWell(systemPythonPath, ['-c', 'import openpyxl']),
   },
+  { name: 'r-base-core', neededBy: 'bench', isPresent: () => existsSync(rscriptPath) },
+  { name: 'unzip', neededBy: 'bench', isPresent: () => runsWell('unzip', ['-v']) },
 ];
 
 function runsWell(program: string, args: string[]): boolean {
@@ -35,9 +39,9 @@ function isRoot(): boolean {
  * Makes sure that what `purpose` needs from the system is there. As root on Debian the missing packages are installed, PostgreSQL
  * without a cluster of its own; anyone else is told the one command to run (throws PlainFailure).
  */
-export function ensureSystemPackages(purpose: 'start' | 'test'): void {
+export function ensureSystemPackages(purpose: Purpose): void {
   const missing = systemPackages
-    .filter(({ neededBy }) => purpose === 'test' || neededBy === 'start')
+    .filter(({ neededBy }) => neededBy === 'start' || neededBy === purpose)
     .filter(({ isPresent }) => !isPresent())
     .map(({ name }) => name);
   if (missing.length === 0) return;
