@@ -20,3 +20,20 @@ export function buildAroundColumns(panel: LinePanel): Column[] {
     values: panel.series.map((series) => series.lnDepth.map((_, t) => Math.max(0, -(series.lnDepth[t + weeks] ?? 0)))),
   }));
 }
+
+/** Fall of ln price since the week before where the new price is featured or displayed: the first week of a cut sells most. */
+export function buildFreshCut(panel: LinePanel): Column {
+  return {
+    name: 'fresh advertised cut',
+    group: 'promotion',
+    hasOwnSlopes: true,
+    sign: 1,
+    priorSpread: 1,
+    values: panel.series.map((series) => {
+      const lnPrice = series.lnRegular.map((lnRegular, t) => lnRegular + series.lnDepth[t]!);
+      return lnPrice.map((value, t) =>
+        t === 0 ? 0 : Math.max(series.feature[t]!, series.display[t]!) * Math.max(0, lnPrice[t - 1]! - value),
+      );
+    }),
+  };
+}

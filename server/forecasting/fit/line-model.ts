@@ -1,4 +1,4 @@
-import { buildAroundColumns } from '../features/around-columns.ts';
+import { buildAroundColumns, buildFreshCut } from '../features/around-columns.ts';
 import type { Column } from '../features/column.ts';
 import { dropUnusableColumns } from '../features/drop-columns.ts';
 import type { LinePanel } from '../features/line-panel.ts';
@@ -54,6 +54,7 @@ function buildFurtherColumns(
   if (specification.neighbourPrice) further.push(buildNeighbourPrice(panel, weights));
   if (specification.neighbourPromotion) further.push(buildNeighbourPromotion(panel, weights));
   if (specification.around) further.push(...buildAroundColumns(panel));
+  if (specification.freshCut) further.push(buildFreshCut(panel));
   further.push(...buildSeason(panel, specification.fourierPairs));
   if (specification.holidays) further.push(...buildHolidays(panel, holidays));
   if (specification.trend) further.push(buildTrend(panel, panel.pastWeeks - 1));

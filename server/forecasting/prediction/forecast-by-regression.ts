@@ -22,7 +22,7 @@ import {
   startingCarry,
   type ChosenSpecification,
 } from '../search/choose-specification.ts';
-import { carryForward, rollCandidate } from '../search/roll-candidate.ts';
+import { carryForward, rollCandidate, type OwnFits } from '../search/roll-candidate.ts';
 import { buildRollingFrame, type RollingFrame } from '../search/rolling-frame.ts';
 import type { Specification } from '../search/specification.ts';
 import type { Finding, LineFit, LineInput, SeriesMethod } from '../types.ts';
@@ -34,7 +34,8 @@ const TIMES_LARGEST_SEEN = 3;
 
 /** What a caller may fix instead of having it chosen out of sample. */
 export interface SearchChoice {
-  specification?: Specification;
+  /** Specifications to average; the first is the kept fit. */
+  specifications?: readonly [Specification, ...Specification[]];
   carry?: CarryRule;
   /** Whether the kept fit is diagnosed, which forecasts alone don't need. */
   isDiagnosed?: boolean;
@@ -132,13 +133,14 @@ export function forecastByRegression(
 }
 
 function choose(panel: LinePanel, input: LineInput, frame: RollingFrame, choice: SearchChoice): ChosenSpecification {
-  const fixed = choice.specification ?? (frame.origins.length === 0 ? thinSpecification : undefined);
+  const fixed = choice.specifications ?? (frame.origins.length === 0 ? [thinSpecification] : undefined);
   if (!fixed) {
     const chosen = chooseSpecification(panel, input.holidays, frame);
     return { ...chosen, carry: choice.carry ?? chosen.carry };
   }
-  const candidate = rollCandidate(panel, input.holidays, frame, fixed, new Map());
-  return { averaged: [candidate], ranked: [], carry: choice.carry ?? startingCarry };
+  const ownFits: OwnFits = new Map();
+  const averaged = fixed.map((one) => rollCandidate(panel, input.holidays, frame, one, ownFits));
+  return { averaged, ranked: [], carry: choice.carry ?? startingCarry };
 }
 
 /** For lines too young to compare candidates: price and promotion only. */

@@ -28,7 +28,7 @@ export interface PredictedSeries {
 
 /**
  * ln forecast of one series over the horizon as a sum of named parts. Price and neighbours are told against the series' own average,
- * promotion against none; with one slope for the price paid, the cut's share of it belongs to promotion.
+ * promotion against none; with one slope for the price paid, the cut's share of it belongs to promotion, and the average is that without cuts.
  */
 export function predictSeries(
   panel: LinePanel,
@@ -49,10 +49,14 @@ export function predictSeries(
     const slope = slopes[k]!;
     if (slope === 0) return;
     const values = column.values[s]!;
-    const average = AGAINST_AVERAGE.includes(column.group) ? moments.columnMeans[k]! : 0;
+    const cut = column.name === PRICE_PAID ? panel.series[s]!.lnDepth : null;
+    const average = cut
+      ? averageWithoutCut(panel, s, values, cut)
+      : AGAINST_AVERAGE.includes(column.group)
+        ? moments.columnMeans[k]!
+        : 0;
     reference += slope * average;
     const part = parts[column.group];
-    const cut = column.name === PRICE_PAID ? panel.series[s]!.lnDepth : null;
     for (let h = 0; h < horizon; h++) {
       const t = pastWeeks + h;
       const cutNow = cut ? Math.min(0, cut[t]!) : 0;
@@ -65,6 +69,14 @@ export function predictSeries(
   const linear = new Float64Array(horizon);
   for (const name of partNames) for (let h = 0; h < horizon; h++) linear[h]! += parts[name][h]!;
   return { linear, parts };
+}
+
+/** Average over the used weeks of what ln price paid would have been without cuts. */
+function averageWithoutCut(panel: LinePanel, s: number, values: Float64Array, cut: Float64Array): number {
+  const { isUsed, usedWeeks } = panel.series[s]!;
+  let total = 0;
+  for (let t = 0; t < panel.pastWeeks; t++) if (isUsed[t]) total += values[t]! - Math.min(0, cut[t]!);
+  return total / Math.max(1, usedWeeks);
 }
 
 /**
@@ -81,8 +93,8 @@ export function tellAgainstBase(plan: PredictedSeries, base: PredictedSeries): R
     return sum(plan.parts, names).map((value, h) => value - without[h]!);
   };
   return {
-    level: sum(base.parts, ['level', 'promotion', 'neighbours']),
-    price: base.parts.price,
+    level: sum(base.parts, ['level', 'neighbours']),
+    price: sum(base.parts, ['price', 'promotion']),
     promotion: beyond(['level', 'price', 'promotion', 'season', 'holiday', 'trend', 'recent level']),
     around: beyond(['around']),
     neighbours: beyond(['neighbours']),

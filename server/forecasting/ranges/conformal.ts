@@ -8,6 +8,8 @@ const BANDS: readonly (readonly [number, number])[] = [
   [9, 13],
   [14, Infinity],
 ];
+/** A band on its own needs this many weeks: with fewer the rank's rounding alone widens an 80 % range by several points. */
+const FEWEST_WEEKS = 30;
 const SMALLEST_FACTOR = 0.5;
 const LARGEST_FACTOR = 3;
 
@@ -39,8 +41,8 @@ export type PathScaling = (horizon: number, kind: 0 | 1) => ScalingFactors | nul
 /**
  * Split conformal prediction (Papadopoulos et al. 2002; Lei et al. 2018): the factor that widens or narrows a range until the share
  * of out-of-sample errors inside it is right, as the error of rank ⌈(n + 1)(1 − α)⌉ among n, a week counting as one case.
- * Where the rank reaches the last case, so that a range would hang on one week, the band is joined with its neighbours, then promoted
- * with other weeks.
+ * Where a band holds few weeks or the rank reaches the last of them, so that a range would hang on one week, the band is joined with
+ * its neighbours, then promoted with other weeks.
  */
 export function scaleByConformal(
   errors: readonly StandardisedError[],
@@ -86,6 +88,7 @@ function widen(
   alpha: number,
   scoreOf: (error: StandardisedError) => number,
 ): number | null {
+  let scores: { score: number; week: number }[] = [];
   for (const isKindKept of [true, false]) {
     for (let reach = 0; reach < BANDS.length; reach++) {
       const first = BANDS[Math.max(0, band - reach)]![0];
@@ -93,14 +96,16 @@ function widen(
       const group = errors.filter(
         (error) => error.horizon >= first && error.horizon <= last && (!isKindKept || error.kind === kind),
       );
-      const factor = conformalQuantile(
-        group.map((error) => ({ score: scoreOf(error), week: error.week })),
-        alpha,
-      );
+      scores = group.map((error) => ({ score: scoreOf(error), week: error.week }));
+      const factor = countWeeks(scores) >= FEWEST_WEEKS ? conformalQuantile(scores, alpha) : null;
       if (factor !== null) return factor;
     }
   }
-  return null;
+  return conformalQuantile(scores, alpha);
+}
+
+function countWeeks(cases: readonly { week: number }[]): number {
+  return new Set(cases.map((one) => one.week)).size;
 }
 
 /**
@@ -108,7 +113,7 @@ function widen(
  * Cells of one week share its shock, so they don't count as cases of their own in the rank.
  */
 export function conformalQuantile(cases: readonly { score: number; week: number }[], alpha: number): number | null {
-  const weeks = new Set(cases.map((one) => one.week)).size;
+  const weeks = countWeeks(cases);
   const rank = Math.ceil((weeks + 1) * (1 - alpha) - 1e-9);
   if (weeks === 0 || rank >= weeks) return null;
   const sorted = Float64Array.from(cases, (one) => one.score).sort();

@@ -34,6 +34,7 @@ export const startingSpecification: Specification = {
   neighbourPromotion: false,
   attraction: true,
   around: false,
+  freshCut: false,
   fourierPairs: 0,
   holidays: false,
   trend: false,
@@ -116,7 +117,7 @@ function listSteps(panel: LinePanel, holidays: readonly HolidayWeek[], frame: Ro
   }
   groups.push([Infinity, 52, 26].map((halfLifeWeeks) => earned({ halfLifeWeeks })));
   groups.push([0.5, 2].map((spread) => earned({ spread })));
-  groups.push([earned({ around: true })]);
+  groups.push([earned({ around: true }), earned({ freshCut: true }), earned({ around: true, freshCut: true })]);
   if (holidays.length > 0) groups.push([earned({ holidays: true })]);
   if (earliest >= WEEKS_IN_YEAR) {
     const pairs = panel.pastWeeks >= 2 * WEEKS_IN_YEAR ? [1, 2, 3, 4] : [1, 2, 3];
@@ -146,6 +147,7 @@ function isNoRicher(one: Specification, best: Specification): boolean {
   return (
     (!one.trend || best.trend) &&
     (!one.around || best.around) &&
+    (!one.freshCut || best.freshCut) &&
     (!one.holidays || best.holidays) &&
     one.fourierPairs <= best.fourierPairs
   );

@@ -8,6 +8,8 @@ export interface Specification {
   neighbourPromotion: boolean;
   attraction: boolean;
   around: boolean;
+  /** An advertised price that has just fallen sells more than one that has lasted. */
+  freshCut: boolean;
   fourierPairs: number;
   holidays: boolean;
   trend: boolean;
@@ -25,6 +27,7 @@ export function nameSpecification(specification: Specification): string {
   if (specification.neighbourPromotion) parts.push('neighbours’ promotion');
   if (specification.attraction) parts.push('attraction');
   if (specification.around) parts.push('around promotions');
+  if (specification.freshCut) parts.push('fresh cut');
   if (specification.fourierPairs > 0) parts.push(`season ${specification.fourierPairs}`);
   if (specification.holidays) parts.push('holidays');
   if (specification.trend) parts.push('trend');
