@@ -16,7 +16,7 @@ export function TopBar() {
   const { t } = useTranslation('shell');
   const { category } = useCategoryInView();
   return (
-    <header className="flex h-11 shrink-0 items-center gap-5 px-6 min-[1440px]:gap-7">
+    <header className="flex min-h-11 shrink-0 flex-wrap items-center gap-x-5 px-6 max-[1100px]:pt-2 min-[1440px]:gap-x-7">
       <Link
         to={withCategory('/', category?.id ?? null)}
         aria-label={t('home')}
@@ -67,7 +67,10 @@ function Places() {
   const current = placeOf(useLocation().pathname);
   const waiting = useQuery(waitingQuery).data?.entries.length ?? 0;
   return (
-    <nav aria-label={t('places')} className="ml-2 h-11">
+    <nav
+      aria-label={t('places')}
+      className="ml-2 h-11 max-[1100px]:order-last max-[1100px]:ml-0 max-[1100px]:basis-full"
+    >
       <ul className="flex h-11 gap-[18px] min-[1440px]:gap-6">
         {places.map(({ name, path }) => (
           <li key={name}>

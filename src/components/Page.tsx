@@ -13,9 +13,7 @@ export function Page({
   children: ReactNode;
 }) {
   return (
-    <div
-      className={fill ? 'flex h-[calc(100dvh-44px)] min-h-[480px] flex-col overflow-hidden' : 'flex flex-1 flex-col'}
-    >
+    <div className={fill ? 'flex min-h-[480px] [flex:1_1_0px] flex-col overflow-hidden' : 'flex flex-1 flex-col'}>
       {weekline}
       <main
         id="main"

@@ -1,6 +1,6 @@
 import type { ReactNode } from 'react';
 
-/** A table in Fairweek's print; scrolls sideways by itself where it must. `caption` is read aloud. */
+/** A table in Fairweek's print; scrolls sideways by itself on a narrow or zoomed page. `caption` is read aloud. */
 export function Table({
   caption,
   className = '',
@@ -11,9 +11,11 @@ export function Table({
   children: ReactNode;
 }) {
   return (
-    <table className={`ledger ${className}`}>
-      <caption className="sr-only">{caption}</caption>
-      {children}
-    </table>
+    <div className="relative max-[1000px]:overflow-x-auto">
+      <table className={`ledger ${className}`}>
+        <caption className="sr-only">{caption}</caption>
+        {children}
+      </table>
+    </div>
   );
 }

@@ -7,6 +7,7 @@ import { ActLink } from '../../../components/Button.tsx';
 import { Page, PageHead } from '../../../components/Page.tsx';
 import { JobProgress } from '../../../components/ProgressBar.tsx';
 import { EmptyState, QueryStates } from '../../../components/states.tsx';
+import { describeError } from '../../../lib/api.ts';
 import { withCategory } from '../../../lib/categories.ts';
 import { formatInstant, formatPercent, formatUnits } from '../../../lib/format.ts';
 import { useTitle } from '../../../lib/use-title.ts';
@@ -21,7 +22,7 @@ export function LinePage() {
   const { t } = useTranslation('lines');
   const lineId = Number(useParams().lineId);
   const view = useQuery(lineFitQuery(lineId));
-  useTitle(view.data ? t('tab', { line: view.data.line.name }) : null);
+  useTitle(view.data ? t('tab', { line: view.data.line.name }) : view.error ? describeError(view.error).title : null);
   return (
     <Page>
       <QueryStates isPage query={view} loading={t('loading')}>

@@ -50,7 +50,7 @@ export function ImportBar({
   return (
     <section
       aria-label={detail.fileName}
-      className="sticky bottom-0 -mx-6 mt-8 flex flex-wrap items-center justify-between gap-x-8 gap-y-2 border-t border-moss bg-moss-tint px-6 py-2.5"
+      className="bottom-0 -mx-6 [@media(min-height:560px)]:sticky mt-8 flex flex-wrap items-center justify-between gap-x-8 gap-y-2 border-t border-moss bg-moss-tint px-6 py-2.5"
     >
       {totals ? <Figures detail={detail} totals={totals} /> : <span />}
       <div className="flex items-center gap-6">

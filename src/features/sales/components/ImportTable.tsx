@@ -41,8 +41,11 @@ export function ImportTable({
       <tbody>
         {imports.map((entry) => (
           <tr key={entry.id}>
-            <th scope="row">
-              <ActLink to={withCategory(`/sales/imports/${entry.id}`, category?.id ?? null)} className="break-all">
+            <th scope="row" className="min-w-[170px]">
+              <ActLink
+                to={withCategory(`/sales/imports/${entry.id}`, category?.id ?? null)}
+                className="[overflow-wrap:anywhere]"
+              >
                 {entry.fileName}
               </ActLink>
               <span className="block text-small text-soft">{t(`kind.${entry.kind}`)}</span>

@@ -32,7 +32,7 @@ export function WaitingEntries({ entries }: { entries: WaitingEntry[] }) {
       </thead>
       <tbody>
         {entries.map((entry, index) => (
-          <Row key={`${entry.kind}-${entry.link}-${entry.subject}`} entry={entry} position={index + 1} />
+          <Row key={`${index}-${entry.kind}-${entry.link}`} entry={entry} position={index + 1} />
         ))}
       </tbody>
     </table>
