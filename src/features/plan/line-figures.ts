@@ -1,6 +1,6 @@
 import type { LinePlan, OverrideInForce, VersionState } from '../../../shared/contracts/plan.ts';
 import { overridesByWeek, replayOverrides } from '../../../shared/domain/override-arithmetic.ts';
-import { addWeeks, listWeeks, weeksBetween } from '../../../shared/domain/weeks.ts';
+import { listWeeks, weeksBetween } from '../../../shared/domain/weeks.ts';
 import { normalScopeKey, type GridRow } from './grid-rows.ts';
 import type { PendingEdit } from './pending-edits.ts';
 
@@ -240,8 +240,4 @@ export function asVersion(plan: LinePlan, state: VersionState): LineFigures {
 /** Weeks of the plan, in order. */
 export function planWeekStarts(plan: Pick<LinePlan, 'planFirstWeek' | 'planWeeks'>): string[] {
   return plan.planFirstWeek === null ? [] : listWeeks(plan.planFirstWeek, plan.planWeeks);
-}
-
-export function lastPlanWeek(plan: Pick<LinePlan, 'planFirstWeek' | 'planWeeks'>): string | null {
-  return plan.planFirstWeek === null ? null : addWeeks(plan.planFirstWeek, Math.max(1, plan.planWeeks) - 1);
 }

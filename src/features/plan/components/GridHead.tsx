@@ -103,7 +103,7 @@ export const GridHead = memo(function GridHead(props: GridHeadProps) {
             return (
               <div key={`${run.value}/${run.first}`} className="plan-month" style={{ left, width }}>
                 <span>
-                  {width < 60 ? monthName.slice(0, 3) : monthName}
+                  {width < monthName.length * 7.6 + 12 ? monthName.slice(0, 3) : monthName}
                   {isJanuary && width > 110 ? ` ${run.value.slice(0, 4)}` : ''}
                 </span>
               </div>

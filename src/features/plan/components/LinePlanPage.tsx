@@ -25,7 +25,7 @@ export function LinePlanPage() {
   const query = useQuery({
     ...linePlanQuery(lineId, historyWeeksToAsk(page.from, seam)),
     enabled: Number.isInteger(lineId) && lineId > 0,
-    refetchInterval: 30_000,
+    refetchInterval: 15_000,
     // While more history is asked for, what is on screen stays.
     placeholderData: (previous) => (previous?.line.id === lineId ? previous : undefined),
   });
@@ -34,6 +34,7 @@ export function LinePlanPage() {
   if (!Number.isInteger(lineId) || lineId <= 0) {
     return (
       <Page>
+        <PageHead title={t('title')} />
         <EmptyState title={t('noSuchLine')} action={<ButtonLink to="/plan">{t('toCategory')}</ButtonLink>} />
       </Page>
     );
@@ -43,38 +44,43 @@ export function LinePlanPage() {
   }
   return (
     <Page>
-      <QueryStates query={query} loading={t('loadingLine')}>
-        {(shown) => (
-          <>
-            <PageHead title={shown.line.name} lead={shown.category.name} />
-            <div className="mt-6">
-              {lastSold === null && shown.historyFirstWeek === null ? (
-                <EmptyState
-                  title={t('empty.noSales')}
-                  action={<ButtonLink to={withCategory('/sales', shown.category.id)}>{t('empty.toSales')}</ButtonLink>}
-                >
-                  {t('empty.noSalesDetail')}
-                </EmptyState>
-              ) : (
-                <EmptyState
-                  title={t('empty.noForecast')}
-                  action={
-                    <ForecastStart
-                      categoryId={shown.category.id}
-                      activeJob={shown.activeJob}
-                      mayForecast={shown.may.forecast}
-                      horizonWeeks={13}
-                      action={t('forecast.category', { category: shown.category.name })}
-                    />
-                  }
-                >
-                  {shown.may.forecast ? t('empty.noForecastDetail') : t('empty.noForecastNotYours')}
-                </EmptyState>
-              )}
-            </div>
-          </>
-        )}
-      </QueryStates>
+      {!plan && <PageHead title={t('title')} lead={category?.name} />}
+      <div className={plan ? '' : 'mt-6'}>
+        <QueryStates query={query} loading={t('loadingLine')}>
+          {(shown) => (
+            <>
+              <PageHead title={shown.line.name} lead={shown.category.name} />
+              <div className="mt-6">
+                {lastSold === null && shown.historyFirstWeek === null ? (
+                  <EmptyState
+                    title={t('empty.noSales')}
+                    action={
+                      <ButtonLink to={withCategory('/sales', shown.category.id)}>{t('empty.toSales')}</ButtonLink>
+                    }
+                  >
+                    {t('empty.noSalesDetail')}
+                  </EmptyState>
+                ) : (
+                  <EmptyState
+                    title={t('empty.noForecast')}
+                    action={
+                      <ForecastStart
+                        categoryId={shown.category.id}
+                        activeJob={shown.activeJob}
+                        mayForecast={shown.may.forecast}
+                        horizonWeeks={13}
+                        action={t('forecast.category', { category: shown.category.name })}
+                      />
+                    }
+                  >
+                    {shown.may.forecast ? t('empty.noForecastDetail') : t('empty.noForecastNotYours')}
+                  </EmptyState>
+                )}
+              </div>
+            </>
+          )}
+        </QueryStates>
+      </div>
     </Page>
   );
 }
