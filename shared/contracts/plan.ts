@@ -2,7 +2,7 @@ import { z } from 'zod';
 import { CalendarHoliday, CalendarPromotion } from './calendar.ts';
 import { Job } from './jobs.ts';
 import { Finding } from './lines.ts';
-import { Id, Instant, Named, Note, WeekStart } from './primitives.ts';
+import { Id, IdText, Instant, Named, Note, WeekStart } from './primitives.ts';
 
 export const LineState = z.enum(['draft', 'submitted', 'locked']);
 export type LineState = z.infer<typeof LineState>;
@@ -264,3 +264,63 @@ export const CategoryPlan = z.object({
   may: z.object({ forecast: z.boolean(), changeRound: z.boolean() }),
 });
 export type CategoryPlan = z.infer<typeof CategoryPlan>;
+
+export const BasePartName = z.enum(['level', 'price', 'season', 'holiday', 'trend', 'recent level']);
+export type BasePartName = z.infer<typeof BasePartName>;
+export const UpliftPartName = z.enum(['promotion', 'around', 'neighbours']);
+export type UpliftPartName = z.infer<typeof UpliftPartName>;
+
+const partOf = <Name extends z.ZodType<string>>(name: Name) =>
+  z.object({
+    name,
+    units: z.number(),
+    /** What the part multiplies by; null of the level, and where nothing is multiplied. */
+    factor: z.number().nullable(),
+  });
+
+/** Asks for one cell or total: ids that are left out are summed over. */
+export const WhyQuery = z.object({ itemId: IdText.optional(), locationId: IdText.optional(), week: WeekStart });
+
+/** Earlier promotion of the same item on like terms, as sold. */
+export const LastPromotion = z.object({
+  firstWeek: WeekStart,
+  lastWeek: WeekStart,
+  weeks: z.number().int(),
+  /** Price cut as a share of the regular price; null where unknown. */
+  depth: z.number().nullable(),
+  isFeatured: z.boolean(),
+  isDisplayed: z.boolean(),
+  /** Units a week in it, and in the middle one of the weeks without promotion before it; null with fewer than three of them. */
+  unitsAWeek: z.number(),
+  ordinaryUnitsAWeek: z.number().nullable(),
+});
+export type LastPromotion = z.infer<typeof LastPromotion>;
+
+/**
+ * Why a planned number is what it is, in units that add up: parts of the base to the base, parts of the uplift to the uplift, base + uplift +
+ * rounding to the model, model + overrides + held to the plan. A total's parts are the sums of its series' parts.
+ */
+export const WhyNumber = z.object({
+  scope: OverrideScope,
+  weekStart: WeekStart,
+  version: z.number().int(),
+  /** Series that are summed. */
+  series: z.number().int(),
+  base: z.object({ units: z.number(), parts: z.array(partOf(BasePartName)) }),
+  uplift: z.object({ units: z.number(), factor: z.number().nullable(), parts: z.array(partOf(UpliftPartName)) }),
+  /** What rounding to unit steps, with the remainder of the weeks before, adds. */
+  rounding: z.number(),
+  model: z.number(),
+  overrides: z.object({
+    units: z.number(),
+    /** Effect of each override on this number in the order in which they apply; the earliest of many come as one. */
+    steps: z.array(z.object({ overrideIds: z.array(Id), units: z.number() })),
+  }),
+  /** What a locked week's version keeps beyond model and overrides; 0 in open weeks. */
+  held: z.number(),
+  plan: z.number(),
+  lastYear: z.object({ weekStart: WeekStart, units: z.number().nullable() }),
+  /** Of single items in promoted weeks, where sales hold one. */
+  lastPromotion: LastPromotion.nullable(),
+});
+export type WhyNumber = z.infer<typeof WhyNumber>;

@@ -159,6 +159,34 @@ export function listRunModels(tx: Tx, lineId: number, runId: number): Promise<Om
   );
 }
 
+/** One week of a line's series: what its run says of it, and the plan in force (null where the plan doesn't hold the series). */
+export interface WhyCellRow {
+  itemId: number;
+  locationId: number;
+  unitStep: number;
+  model: number;
+  mean: number;
+  base: number;
+  /** Natural-log parts of the median by factor name. */
+  logParts: Record<string, number>;
+  plan: number | null;
+}
+
+/** Series of one line in one run, by item and location, in the week at `position` (1-based) of the run. */
+export function listWhyCells(tx: Tx, lineId: number, runId: number, position: number): Promise<WhyCellRow[]> {
+  return selectRows<WhyCellRow>(
+    tx,
+    `select s.item_id as "itemId", s.location_id as "locationId", s.unit_step as "unitStep", s.model[$position::int] as model, s.mean[$position::int] as mean,
+            s.base[$position::int] as base, p.plan[$position::int] as plan,
+            coalesce((select jsonb_object_agg(e.key, e.value->($position::int - 1)) from jsonb_each(s.parts) e), '{}') as "logParts"
+     from run_series s
+     left join plan_series p on p.line_id = s.line_id and p.item_id = s.item_id and p.location_id = s.location_id
+     where s.run_id = $runId and s.line_id = $lineId
+     order by s.item_id, s.location_id`,
+    { lineId, runId, position },
+  );
+}
+
 export interface StoredOverride extends ReplayedOverride {
   lineId: number;
   version: number;

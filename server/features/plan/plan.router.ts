@@ -8,6 +8,7 @@ import {
   StartForecast,
   SubmitLine,
   UnlockLine,
+  WhyQuery,
 } from '../../../shared/contracts/plan.ts';
 import { IdText } from '../../../shared/contracts/primitives.ts';
 import type { Deps } from '../../lib/deps.ts';
@@ -18,6 +19,7 @@ import { changeRound, lockLine, returnLine, submitLine, unlockLine } from './han
 import { saveOverrides } from './overrides.service.ts';
 import { defaultHistoryWeeks, readCategoryPlan, readLinePlan } from './plan.service.ts';
 import { listVersions, readVersion } from './versions.service.ts';
+import { readWhy } from './why.service.ts';
 
 const LinePath = z.object({ lineId: IdText });
 const VersionPath = z.object({ lineId: IdText, number: IdText });
@@ -52,6 +54,13 @@ export function planRouter({ database }: Deps): Router {
     const actor = actorOf(request);
     const { lineId } = parseRequest(LinePath, request.params);
     response.json(await saveOverrides(database, actor, lineId, parseRequest(SaveOverrides, request.body)));
+  });
+  router.get('/plan/lines/:lineId/why', async (request, response) => {
+    const { lineId } = parseRequest(LinePath, request.params);
+    const { itemId = null, locationId = null, week } = parseRequest(WhyQuery, request.query);
+    response.json(
+      await readWhy(database, actorOf(request), lineId, { scope: { itemId, locationId }, weekStart: week }),
+    );
   });
   router.get('/plan/lines/:lineId/versions', async (request, response) => {
     const { lineId } = parseRequest(LinePath, request.params);
