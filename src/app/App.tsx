@@ -9,17 +9,21 @@ import { routes } from './routes.tsx';
 const queryClient = createQueryClient();
 const router = createBrowserRouter(routes);
 
-/** A session that ended anywhere leads to the door, and back to the same page afterwards. */
-function goToSignIn(): void {
+let isLeaving = false;
+
+/** A session that ended anywhere leads to the door, and back to the same page afterwards. What was shown is forgotten once the page is left. */
+async function goToSignIn(): Promise<void> {
   const { pathname, search } = router.state.location;
-  if (pathname === '/sign-in' || pathname.startsWith('/invitation/')) return;
-  queryClient.clear();
+  if (isLeaving || pathname === '/sign-in' || pathname.startsWith('/invitation/')) return;
+  isLeaving = true;
   const next = pathname === '/' && search === '' ? '' : `?next=${encodeURIComponent(pathname + search)}`;
-  void router.navigate(`/sign-in${next}`, { replace: true });
+  await router.navigate(`/sign-in${next}`, { replace: true });
+  queryClient.clear();
+  isLeaving = false;
 }
 
 export function App() {
-  useEffect(() => onSignedOut(goToSignIn), []);
+  useEffect(() => onSignedOut(() => void goToSignIn()), []);
   return (
     <QueryClientProvider client={queryClient}>
       <RouterProvider router={router} />

@@ -1,4 +1,4 @@
-import { useQuery } from '@tanstack/react-query';
+import { useQuery, useQueryClient } from '@tanstack/react-query';
 import { useTranslation } from 'react-i18next';
 import { Link, useLocation, useNavigate } from 'react-router-dom';
 import { FairweekMark } from '../components/marks.tsx';
@@ -7,7 +7,7 @@ import { showToast } from '../components/toasts.ts';
 import { waitingQuery } from '../features/waiting/queries.ts';
 import { describeError } from '../lib/api.ts';
 import { useCategoryInView, withCategory } from '../lib/categories.ts';
-import { roleIn, useSession, useSignOut } from '../lib/session.ts';
+import { roleIn, signOut, useSession } from '../lib/session.ts';
 import { useTheme } from '../lib/theme.ts';
 import { FindBox } from './FindBox.tsx';
 import { placeOf, places } from './places.ts';
@@ -104,12 +104,13 @@ function PersonMenu() {
   const { category } = useCategoryInView();
   const { theme, switchTheme } = useTheme();
   const navigate = useNavigate();
-  const signOut = useSignOut();
+  const client = useQueryClient();
   const role = roleIn(person.assignments, category?.id ?? null);
   const leave = async () => {
     try {
       await signOut();
       await navigate('/sign-in');
+      client.clear();
     } catch (error) {
       showToast({ tone: 'problem', text: describeError(error).detail });
     }

@@ -1,4 +1,4 @@
-import { queryOptions, useQueryClient, useSuspenseQuery } from '@tanstack/react-query';
+import { queryOptions, useSuspenseQuery } from '@tanstack/react-query';
 import { useCallback } from 'react';
 import { Session } from '../../shared/contracts/accounts.ts';
 import { mayDo, type Right, type Role } from '../../shared/domain/roles.ts';
@@ -37,10 +37,7 @@ export function roleIn(
   return order.find((role) => held.has(role)) ?? null;
 }
 
-export function useSignOut(): () => Promise<void> {
-  const client = useQueryClient();
-  return useCallback(async () => {
-    await requestNothing('/session', { method: 'DELETE' });
-    client.clear();
-  }, [client]);
+/** Ends the session; the caller leads to the door. */
+export function signOut(): Promise<void> {
+  return requestNothing('/session', { method: 'DELETE' });
 }
