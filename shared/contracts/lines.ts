@@ -118,6 +118,8 @@ export const LineFitView = z.object({
       diagnosis: FitDiagnosis.nullable(),
     })
     .nullable(),
+  /** Names by code of the items and locations that the fit speaks of. */
+  names: z.object({ items: z.record(z.string(), z.string()), locations: z.record(z.string(), z.string()) }),
   activeJob: Job.nullable(),
 });
 export type LineFitView = z.infer<typeof LineFitView>;

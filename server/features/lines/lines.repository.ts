@@ -46,6 +46,21 @@ export function findLine(tx: Tx, id: number): Promise<{ line: Named; category: N
   );
 }
 
+/** Names by code of a line's items, past ones included, and of the locations where they are forecast. */
+export async function findNames(tx: Tx, lineId: number): Promise<LineFitView['names']> {
+  const row = await selectRow<LineFitView['names']>(
+    tx,
+    `select coalesce((select jsonb_object_agg(i.code, i.name) from item i
+                      where i.id in (select m.item_id from item_membership m where m.line_id = $lineId)), '{}') as items,
+            coalesce((select jsonb_object_agg(l.code, l.name) from location l
+                      where l.id in (select t.location_id from run_series t
+                                     where t.line_id = $lineId
+                                       and t.run_id = (select max(run_id) from fit where line_id = $lineId))), '{}') as locations`,
+    { lineId },
+  );
+  return row ?? { items: {}, locations: {} };
+}
+
 /** The newest fit of a line, as the line page shows it. */
 export async function findNewestFit(tx: Tx, lineId: number): Promise<LineFitView['fit']> {
   const row = await selectRow<{ fit: LineFitView['fit'] }>(

@@ -62,6 +62,7 @@ export function readLineFit(database: Database, actor: Actor, lineId: number): P
     return LineFitView.parse({
       ...found,
       fit: await repository.findNewestFit(tx, lineId),
+      names: await repository.findNames(tx, lineId),
       activeJob: await findActiveJob(tx, `category:${found.category.id}`),
     });
   });

@@ -1,7 +1,16 @@
-import type { LineFitView } from '../../../shared/contracts/lines.ts';
+import type { DiagnosedEffect, EffectEvidence, LineFitView } from '../../../shared/contracts/lines.ts';
 
 type Fit = NonNullable<LineFitView['fit']>;
 type Coefficient = Fit['coefficients'][number];
+
+/** How far the items (or locations) of a line say an effect themselves, and how far apart they lie, as factors. */
+export interface EffectShare {
+  level: 'items' | 'locations';
+  /** Their own evidence, 0…1; the rest is the line's. */
+  own: number;
+  least: { name: string; factor: number };
+  most: { name: string; factor: number };
+}
 
 /** One effect as people speak of it: what the units are multiplied by when something happens, with its 95 % range. */
 export interface Effect {
@@ -15,6 +24,10 @@ export interface Effect {
   high: number | null;
   /** The range holds 1. */
   isUncertain: boolean;
+  /** Names of the coefficients that it can't be told apart from, season's waves as `season`. */
+  inseparableFrom: string[];
+  /** Null where the whole line shares the effect. */
+  share: EffectShare | null;
 }
 
 const spoken: Readonly<Record<string, { sentence: string; move: number }>> = {
@@ -36,20 +49,25 @@ const spoken: Readonly<Record<string, { sentence: string; move: number }>> = {
 };
 
 const holidayPattern = /^(.*): week (before|of|after)$/;
+const wavePattern = /^season (sine|cosine) (\d+)$/;
 
 /**
  * Coefficients in ln units, turned into factors of the units for a move that people know; season as one effect, highest against lowest
- * month. One that was taken as none (0 without error: its sign couldn't be) is left out.
+ * month. One that was taken as none (0 without error: its sign couldn't be) is left out. `diagnosed`: what the fit's diagnosis says of each.
  */
-export function listEffects(coefficients: readonly Coefficient[]): Effect[] {
+export function listEffects(
+  coefficients: readonly Coefficient[],
+  diagnosed: readonly DiagnosedEffect[] = [],
+): Effect[] {
+  const diagnosisOf = new Map(diagnosed.map((effect) => [effect.name, effect]));
   const effects = coefficients
     .filter(({ group, estimate, standardError }) => group !== 'season' && (estimate !== 0 || standardError !== 0))
-    .map(toEffect);
-  const season = readSeason(coefficients);
+    .map((coefficient) => toEffect(coefficient, diagnosisOf.get(coefficient.name)));
+  const season = readSeason(coefficients, diagnosed);
   return season ? [...effects, season] : effects;
 }
 
-function toEffect(coefficient: Coefficient): Effect {
+function toEffect(coefficient: Coefficient, diagnosed: DiagnosedEffect | undefined): Effect {
   const known = spoken[coefficient.name];
   const holiday = holidayPattern.exec(coefficient.name);
   const { sentence, move } = known ?? {
@@ -67,7 +85,25 @@ function toEffect(coefficient: Coefficient): Effect {
     low,
     high,
     isUncertain: low <= 1 && high >= 1,
+    inseparableFrom: joinSeason(diagnosed?.inseparableFrom ?? []),
+    share: diagnosed ? toShare(diagnosed, move) : null,
   };
+}
+
+/** Items where there are several, else locations. */
+function toShare({ items, locations }: DiagnosedEffect, move: number): EffectShare | null {
+  const ofLevel = (level: EffectShare['level'], { own, lowest, highest }: EffectEvidence): EffectShare => {
+    const ends = [lowest, highest]
+      .map(({ name, slope }) => ({ name, factor: Math.exp(slope * move) }))
+      .sort((a, b) => a.factor - b.factor);
+    return { level, own, least: ends[0]!, most: ends[1]! };
+  };
+  if (items) return ofLevel('items', items);
+  return locations ? ofLevel('locations', locations) : null;
+}
+
+function joinSeason(names: readonly string[]): string[] {
+  return [...new Set(names.map((name) => (wavePattern.test(name) ? 'season' : name)))];
 }
 
 /** Day of the year with the highest and the lowest season, and what lies between them. */
@@ -79,7 +115,7 @@ export interface SeasonSpan {
 
 export function readSeasonSpan(coefficients: readonly Coefficient[]): SeasonSpan | null {
   const waves = coefficients.flatMap(({ name, estimate }) => {
-    const match = /^season (sine|cosine) (\d+)$/.exec(name);
+    const match = wavePattern.exec(name);
     return match ? [{ isSine: match[1] === 'sine', pair: Number(match[2]), estimate }] : [];
   });
   if (waves.length === 0) return null;
@@ -95,9 +131,10 @@ export function readSeasonSpan(coefficients: readonly Coefficient[]): SeasonSpan
   return { highestDay, lowestDay, factor: Math.exp((levels[highestDay] ?? 0) - (levels[lowestDay] ?? 0)) };
 }
 
-function readSeason(coefficients: readonly Coefficient[]): Effect | null {
+function readSeason(coefficients: readonly Coefficient[], diagnosed: readonly DiagnosedEffect[]): Effect | null {
   const span = readSeasonSpan(coefficients);
   if (!span) return null;
+  const others = diagnosed.flatMap(({ group, inseparableFrom }) => (group === 'season' ? inseparableFrom : []));
   return {
     sentence: 'season',
     name: 'season',
@@ -106,5 +143,7 @@ function readSeason(coefficients: readonly Coefficient[]): Effect | null {
     low: null,
     high: null,
     isUncertain: false,
+    inseparableFrom: joinSeason(others).filter((name) => name !== 'season'),
+    share: null,
   };
 }

@@ -26,8 +26,10 @@ afterEach(() => world.close());
 
 it('stores the diagnosis with the fit and shows it to who may see the line', async () => {
   await forecast(world);
-  const { fit } = LineFitView.parse((await world.viewer.get(`/lines/${world.lineId}/fit`)).body);
+  const { fit, names } = LineFitView.parse((await world.viewer.get(`/lines/${world.lineId}/fit`)).body);
   const { diagnosis } = fit!;
+  expect(diagnosis!.influential.every(({ item }) => names.items[item])).toBe(true);
+  expect(diagnosis!.influential.every(({ location }) => names.locations[location])).toBe(true);
   expect(diagnosis).toMatchObject({ rows: fit!.rows, series: 6, items: 3, weeks: 80 });
   expect(diagnosis!.parameters).toBeGreaterThan(6);
   expect(diagnosis!.effects.map(({ name }) => name)).toEqual(fit!.coefficients.map(({ name }) => name));

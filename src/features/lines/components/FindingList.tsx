@@ -1,6 +1,6 @@
 import { useTranslation } from 'react-i18next';
 import i18next from 'i18next';
-import type { Finding } from '../../../../shared/contracts/lines.ts';
+import type { Finding, LineFitView } from '../../../../shared/contracts/lines.ts';
 import { Section } from '../../../components/Page.tsx';
 import { formatUnits } from '../../../lib/format.ts';
 import { type FindingGroup, groupFindings } from '../findings.ts';
@@ -8,9 +8,9 @@ import { type FindingGroup, groupFindings } from '../findings.ts';
 const few = 3;
 const many = 40;
 
-export function FindingList({ findings }: { findings: Finding[] }) {
+export function FindingList({ findings, names }: { findings: Finding[]; names: LineFitView['names'] }) {
   const { t } = useTranslation('lines');
-  const groups = groupFindings(findings);
+  const groups = groupFindings(findings, names);
   return (
     <Section title={t('findings.title')}>
       {groups.length === 0 ? (

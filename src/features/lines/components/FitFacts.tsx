@@ -1,19 +1,27 @@
 import { useTranslation } from 'react-i18next';
 import type { LineFitView } from '../../../../shared/contracts/lines.ts';
 import { Section } from '../../../components/Page.tsx';
-import { Table } from '../../../components/Table.tsx';
 import { formatPercent, formatUnits } from '../../../lib/format.ts';
+import { RivalTable } from './RivalTable.tsx';
 
 export function FitFacts({ fit }: { fit: NonNullable<LineFitView['fit']> }) {
   const { t } = useTranslation('lines');
-  const name = fit.specification.name;
+  const { name } = fit.specification;
+  const { diagnosis } = fit;
   const facts: [string, string][] = [
     [t('facts.rows'), formatUnits(fit.rows)],
     [t('facts.rank'), formatUnits(fit.rank)],
+    ...(diagnosis
+      ? ([[t('facts.parameters'), formatUnits(diagnosis.parameters, 1)]] satisfies [string, string][])
+      : []),
     [t('facts.explained'), formatPercent(fit.rSquared)],
     [t('facts.sigma'), t('facts.sigmaValue', { share: formatPercent(Math.exp(fit.sigma) - 1, 0) })],
-    [t('facts.aic'), formatUnits(fit.aic, 1)],
   ];
+  if (diagnosis && diagnosis.adjustedRSquaredWithin !== null) {
+    facts.push([t('facts.adjusted'), formatPercent(diagnosis.adjustedRSquaredWithin)]);
+  }
+  const aic = diagnosis ? diagnosis.likelihood?.aic : fit.aic;
+  if (aic !== undefined) facts.push([t('facts.aic'), formatUnits(aic, 1)]);
   if (fit.seconds > 0) {
     facts.push([t('facts.seconds'), t('facts.secondsValue', { seconds: formatUnits(fit.seconds, 1) })]);
   }
@@ -30,32 +38,7 @@ export function FitFacts({ fit }: { fit: NonNullable<LineFitView['fit']> }) {
           ))}
         </dl>
       </Section>
-      {fit.scores.length > 0 && (
-        <Section title={t('scores.title')}>
-          <Table caption={t('scores.caption')}>
-            <thead>
-              <tr>
-                <th scope="col">{t('scores.specification')}</th>
-                <th scope="col" className="num">
-                  {t('scores.crps')}
-                </th>
-                <th scope="col" className="num">
-                  {t('scores.wape')}
-                </th>
-              </tr>
-            </thead>
-            <tbody>
-              {fit.scores.map((score) => (
-                <tr key={score.specification}>
-                  <th scope="row">{score.specification}</th>
-                  <td className="num">{formatUnits(score.crps, 1)}</td>
-                  <td className="num">{formatPercent(score.wape)}</td>
-                </tr>
-              ))}
-            </tbody>
-          </Table>
-        </Section>
-      )}
+      {fit.scores.length > 0 && <RivalTable fit={fit} />}
     </>
   );
 }

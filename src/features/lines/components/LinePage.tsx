@@ -13,7 +13,7 @@ import { formatInstant, formatPercent, formatUnits } from '../../../lib/format.t
 import { useTitle } from '../../../lib/use-title.ts';
 import { lineFitQuery } from '../queries.ts';
 import { EffectTable } from './EffectTable.tsx';
-import { ExpertTable } from './ExpertTable.tsx';
+import { ExpertDrawer } from './ExpertDrawer.tsx';
 import { FindingList } from './FindingList.tsx';
 import { FitFacts } from './FitFacts.tsx';
 import { LineOutlook } from './LineOutlook.tsx';
@@ -34,7 +34,7 @@ export function LinePage() {
 
 function LineView({ view }: { view: LineFitView }) {
   const { t } = useTranslation('lines');
-  const { fit, line, category } = view;
+  const { fit, line, category, names } = view;
   return (
     <>
       <PageHead
@@ -63,15 +63,19 @@ function LineView({ view }: { view: LineFitView }) {
       ) : (
         <div className="mt-4 grid grid-cols-1 gap-x-11 gap-y-8 min-[1100px]:grid-cols-[minmax(0,7fr)_minmax(0,5fr)]">
           <div className="grid min-w-0 grid-cols-[minmax(0,1fr)] content-start gap-8">
-            <EffectTable coefficients={fit.coefficients} />
-            <ExpertTable coefficients={fit.coefficients} />
+            <EffectTable fit={fit} names={names} />
           </div>
           <div className="grid min-w-0 grid-cols-[minmax(0,1fr)] content-start gap-8">
             <LineOutlook lineId={line.id} />
             <FitFacts fit={fit} />
-            <FindingList findings={fit.findings} />
+            <FindingList findings={fit.findings} names={names} />
             <p className="text-small text-soft">{t('caution')}</p>
           </div>
+          {fit.diagnosis && (
+            <div className="min-w-0 min-[1100px]:col-span-2">
+              <ExpertDrawer fit={fit} diagnosis={fit.diagnosis} names={names} />
+            </div>
+          )}
         </div>
       )}
     </>

@@ -1,4 +1,5 @@
 import { describe, expect, it } from 'vitest';
+import type { DiagnosedEffect } from '../../../../shared/contracts/lines.ts';
 import { listEffects, readSeasonSpan } from '../../../../src/features/lines/effects.ts';
 import { groupFindings } from '../../../../src/features/lines/findings.ts';
 
@@ -9,6 +10,18 @@ const coefficient = (name: string, group: string, estimate: number, spread = 0.1
   standardError: spread / 2,
   low95: estimate - spread,
   high95: estimate + spread,
+});
+
+const diagnosed = (name: string, over: Partial<DiagnosedEffect>): DiagnosedEffect => ({
+  name,
+  group: 'promotion',
+  estimate: 0,
+  errors: null,
+  varianceInflation: null,
+  inseparableFrom: [],
+  items: null,
+  locations: null,
+  ...over,
 });
 
 describe('effects', () => {
@@ -44,6 +57,38 @@ describe('effects', () => {
 
   it('leave out what was taken as none', () => {
     expect(listEffects([coefficient('coupon', 'promotion', 0, 0)])).toEqual([]);
+  });
+
+  it('say which items lie lowest and highest, as factors, and whose evidence it is', () => {
+    const [effect] = listEffects(
+      [coefficient('price cut', 'promotion', -2.5)],
+      [
+        diagnosed('price cut', {
+          items: {
+            own: 0.6,
+            withOwnSlope: 3,
+            members: 4,
+            lowest: { name: 'a', slope: -3 },
+            highest: { name: 'b', slope: -2 },
+          },
+        }),
+      ],
+    );
+    expect(effect?.share).toMatchObject({ level: 'items', own: 0.6, least: { name: 'b' }, most: { name: 'a' } });
+    expect(effect?.share?.least.factor).toBeCloseTo(0.8 ** -2, 12);
+    expect(effect?.share?.most.factor).toBeCloseTo(0.8 ** -3, 12);
+  });
+
+  it('name what they can’t be told apart from, the season’s waves once', () => {
+    const effects = listEffects(
+      [coefficient('trend', 'trend', 0.1), coefficient('season cosine 1', 'season', 0.3)],
+      [
+        diagnosed('trend', { inseparableFrom: ['season cosine 1', 'season sine 1'] }),
+        diagnosed('season cosine 1', { group: 'season', inseparableFrom: ['trend', 'season sine 1'] }),
+      ],
+    );
+    expect(effects.map(({ inseparableFrom }) => inseparableFrom)).toEqual([['season'], ['trend']]);
+    expect(effects[0]?.share).toBeNull();
   });
 
   it('join the season’s waves into highest against lowest day', () => {
