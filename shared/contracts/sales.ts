@@ -1,27 +1,8 @@
 import { z } from 'zod';
+import { columnMeanings } from '../domain/column-meanings.ts';
 import { Job } from './jobs.ts';
 import { Id, Instant, Name, Note, WeekStart } from './primitives.ts';
 
-export const columnMeanings = [
-  'week',
-  'category',
-  'line',
-  'item',
-  'item-name',
-  'location',
-  'units',
-  'net-value',
-  'price',
-  'regular-price',
-  'depth',
-  'feature',
-  'display',
-  'mechanic',
-  'gap',
-  'days-open',
-  'promotion-name',
-  'ignore',
-] as const;
 export const ColumnMeaning = z.enum(columnMeanings);
 export type ColumnMeaning = z.infer<typeof ColumnMeaning>;
 

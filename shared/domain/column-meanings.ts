@@ -1,5 +1,5 @@
 /** What a column of an imported file can mean. Each meaning stands for one column at most, `mechanic` and `ignore` for any number. */
-export const COLUMN_MEANINGS = [
+export const columnMeanings = [
   'week',
   'category',
   'line',
@@ -20,17 +20,17 @@ export const COLUMN_MEANINGS = [
   'ignore',
 ] as const;
 
-export type ColumnMeaning = (typeof COLUMN_MEANINGS)[number];
+export type ColumnMeaning = (typeof columnMeanings)[number];
 
 /** Meanings whose cells are shares of 0…1, written as fractions, percents or yes and no. */
-export const SHARE_MEANINGS: readonly ColumnMeaning[] = ['depth', 'feature', 'display', 'mechanic', 'gap'];
+export const shareMeanings: readonly ColumnMeaning[] = ['depth', 'feature', 'display', 'mechanic', 'gap'];
 
 /** Meanings whose cells are numbers. */
-export const NUMBER_MEANINGS: readonly ColumnMeaning[] = [
+export const numberMeanings: readonly ColumnMeaning[] = [
   'units',
   'netValue',
   'price',
   'regularPrice',
   'daysOpen',
-  ...SHARE_MEANINGS,
+  ...shareMeanings,
 ];

@@ -22,7 +22,7 @@ import {
   type TableRow,
 } from '../../workbooks/reading/table.ts';
 import { UnreadableFileError } from '../../workbooks/reading/unreadable-file-error.ts';
-import { toContractMeaning, toReadingForm, toTableMapping } from './mapping-translation.ts';
+import { toReadingForm, toTableMapping } from './mapping-translation.ts';
 import { RangeResolver, type RangeSnapshot, type ResolverChoices } from './range-resolver.ts';
 import { type StagingFile } from './staging-file.ts';
 
@@ -72,13 +72,13 @@ export async function proposeReading(
 ): Promise<FileProposal> {
   const proposal = given ? await followMapping(table, given, context) : await proposeFromContent(table, context);
   const { mapping, form } = proposal;
-  const missing = listMissingMeanings(toTableMapping(mapping).columns).map(toContractMeaning);
+  const missing = listMissingMeanings(toTableMapping(mapping).columns);
   if (form.refusal && form.refusal.code !== 'no-weeks') {
     throw new UnreadableFileError('suspicious-content', form.refusal.sentence);
   }
   const obstacle =
     missing.length > 0
-      ? `Say which column holds: ${missing.map((meaning) => meaning.replace('-', ' ')).join(', ')}.`
+      ? `Say which column holds: ${missing.map((meaning) => meaning.replace(/[A-Z]/g, (letter) => ` ${letter.toLowerCase()}`)).join(', ')}.`
       : (form.refusal?.sentence ?? null);
   const findings = form.questions.map((question) => toNotice(`question-${question}`, questionTexts[question]));
   if (obstacle !== null) findings.unshift(toNotice('mapping-incomplete', obstacle));
@@ -130,7 +130,7 @@ function toContractMapping(
         : {
             index: column,
             header,
-            meaning: toContractMeaning(meaning),
+            meaning,
             ...(mechanic === undefined ? {} : { mechanicName: mechanic }),
             ...(scale === undefined ? {} : { scale }),
             confidence,
@@ -177,7 +177,7 @@ async function followMapping(table: OpenedTable, given: ImportMapping, context: 
     : proposeMapping(names, rows).map(({ column, name, meaning, mechanic, scale, confidence }) => ({
         index: column,
         header: name,
-        meaning: toContractMeaning(meaning),
+        meaning,
         ...(mechanic === undefined ? {} : { mechanicName: mechanic }),
         ...(scale === undefined ? {} : { scale }),
         confidence,

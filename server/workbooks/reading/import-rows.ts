@@ -1,4 +1,4 @@
-import { SHARE_MEANINGS, type ColumnMeaning } from '../../../shared/domain/column-meanings.ts';
+import { shareMeanings, type ColumnMeaning } from '../../../shared/domain/column-meanings.ts';
 import { addDays, addWeeks, toDayNumber, weekdayOf } from '../../../shared/domain/weeks.ts';
 import type { ImportMapping, ReadingForm } from './inspect-table.ts';
 import type { ImportKind, MappedColumn } from './mapping.ts';
@@ -396,7 +396,7 @@ class RowReader {
         'The figure stands in a merged cell over several rows, so no row has its own. Unmerge the cells and fill each row.';
       throw new RowRefused({ column, kind: 'merged-figure', detail });
     }
-    const isShare = SHARE_MEANINGS.includes(meaning);
+    const isShare = shareMeanings.includes(meaning);
     const { decimalSign } = this.options.form;
     const reading = isShare ? readShare(cell, decimalSign, scale ?? 'fraction') : readNumber(cell, decimalSign);
     if (reading === null) return undefined;

@@ -1,5 +1,5 @@
 import type { ColumnMeaning } from '../../../shared/domain/column-meanings.ts';
-import { NUMBER_MEANINGS } from '../../../shared/domain/column-meanings.ts';
+import { numberMeanings } from '../../../shared/domain/column-meanings.ts';
 import { toDayNumber, weekdayOf, type Weekday } from '../../../shared/domain/weeks.ts';
 import { findHeader, type FoundHeader } from './header.ts';
 import { simplifyName } from './header-words.ts';
@@ -130,7 +130,7 @@ export async function proposeForm(
 ): Promise<FormProposal> {
   const weekColumn = mapping.columns.find(({ meaning }) => meaning === 'week')?.column;
   const numberColumns = mapping.columns
-    .filter(({ meaning }) => NUMBER_MEANINGS.includes(meaning))
+    .filter(({ meaning }) => numberMeanings.includes(meaning))
     .map(({ column }) => column);
   const evidence = await gatherEvidence(table, mapping, weekColumn, numberColumns);
   const questions: OpenQuestion[] = [];

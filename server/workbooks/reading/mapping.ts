@@ -1,5 +1,5 @@
 import { createHash } from 'node:crypto';
-import { SHARE_MEANINGS, type ColumnMeaning } from '../../../shared/domain/column-meanings.ts';
+import { shareMeanings, type ColumnMeaning } from '../../../shared/domain/column-meanings.ts';
 import { matchCanonicalName, matchHeaderName, nameMechanic, simplifyName, type NameMatch } from './header-words.ts';
 import { detectDecimalSign, readNumber } from './number-reading.ts';
 import type { CellValue, TableRow } from './table.ts';
@@ -90,7 +90,7 @@ export function proposeMapping(names: readonly string[], sampleRows: readonly Ta
       name,
       meaning,
       ...(meaning === 'mechanic' ? { mechanic: choice?.match.mechanic ?? nameMechanic(name) } : {}),
-      ...(SHARE_MEANINGS.includes(meaning)
+      ...(shareMeanings.includes(meaning)
         ? { scale: facts.percent > 0 ? ('percent' as const) : ('fraction' as const) }
         : {}),
       confidence: Math.round((choice?.match.confidence ?? 0) * 100) / 100,

@@ -34,7 +34,7 @@ export function giveMeaning(mapping: ImportMapping, index: number, meaning: Colu
 
 export type MissingPart = 'week' | 'item' | 'units' | 'mechanic' | 'planned';
 
-const planned: ColumnMeaning[] = ['regular-price', 'depth', 'feature', 'display', 'mechanic'];
+const planned: ColumnMeaning[] = ['regularPrice', 'depth', 'feature', 'display', 'mechanic'];
 
 /**
  * What still has to be answered before the file can be read with this mapping. Whether it needs a category or a line chosen only the

@@ -2,7 +2,8 @@ import { readdirSync, readFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { describe, expect, it } from 'vitest';
 import { englishTexts } from '../../../src/app/i18n.ts';
-import { columnMeanings, importKinds, importStates } from '../../../shared/contracts/sales.ts';
+import { importKinds, importStates } from '../../../shared/contracts/sales.ts';
+import { columnMeanings } from '../../../shared/domain/column-meanings.ts';
 import { waitingKinds } from '../../../shared/contracts/waiting.ts';
 import { roles } from '../../../shared/domain/roles.ts';
 

@@ -1,10 +1,6 @@
 import { useTranslation } from 'react-i18next';
-import {
-  columnMeanings,
-  type ColumnMeaning,
-  type ImportDetail,
-  type ImportMapping,
-} from '../../../../shared/contracts/sales.ts';
+import { type ColumnMeaning, type ImportDetail, type ImportMapping } from '../../../../shared/contracts/sales.ts';
+import { columnMeanings } from '../../../../shared/domain/column-meanings.ts';
 import { Button } from '../../../components/Button.tsx';
 import { Section } from '../../../components/Page.tsx';
 import { ProblemNote } from '../../../components/states.tsx';
