@@ -47,6 +47,7 @@ export function ImportBar({
   };
   const advice = isChanged ? t('bar.readAgain') : (obstacle ?? (isYesMissing ? t('unknown.needed') : null));
 
+  if (!totals && !(canDrop && detail.mayAccept)) return null;
   return (
     <section
       aria-label={detail.fileName}
