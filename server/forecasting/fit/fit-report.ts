@@ -1,3 +1,4 @@
+import { computeStudentQuantile } from '../../../shared/statistics/distributions/student-t.ts';
 import type { LinePanel } from '../features/line-panel.ts';
 import type { RolledCandidate } from '../search/roll-candidate.ts';
 import type { Finding, FittedCoefficient, LineFit } from '../types.ts';
@@ -5,7 +6,8 @@ import type { KeptFit } from './kept-fit.ts';
 import type { LineModel } from './line-model.ts';
 import type { CarryRule } from './recent-level.ts';
 
-const NORMAL_97_5 = 1.959963984540054;
+/** Fourth moment of a normal score over its squared variance. */
+const NORMAL_KURTOSIS = 3;
 
 /** What is kept and shown of a fit: the line's slopes with their errors clustered by week, and how well the rows are met. */
 export function reportFit(
@@ -21,14 +23,16 @@ export function reportFit(
   const columns = model.columns;
   const coefficients = columns.map((column, k): FittedCoefficient => {
     const estimate = kept.coefficients[k]!;
-    const standardError = Math.sqrt(influences.reduce((sum, influence) => sum + influence[k]! ** 2, 0));
+    const squares = influences.map((influence) => influence[k]! ** 2);
+    const standardError = Math.sqrt(squares.reduce((sum, square) => sum + square, 0));
+    const reach = computeStudentQuantile(0.975, countIndependentWeeks(squares)) * standardError;
     return {
       name: column.name,
       group: column.group,
       estimate,
       standardError,
-      low95: estimate - NORMAL_97_5 * standardError,
-      high95: estimate + NORMAL_97_5 * standardError,
+      low95: estimate - reach,
+      high95: estimate + reach,
     };
   });
   const { squares, total, weightSum, logLikelihood } = describeRows(model, kept);
@@ -53,6 +57,17 @@ export function reportFit(
     findings,
     seconds: 0,
   };
+}
+
+/**
+ * Degrees of freedom of a variance that is a sum over weeks, (Σv)² ÷ Σv² (Satterthwaite 1946) with v the expected squares: the observed ones
+ * have three times their squared expectation under a normal score. An effect that moved in few weeks rests on few.
+ */
+function countIndependentWeeks(squares: readonly number[]): number {
+  const sum = squares.reduce((total, square) => total + square, 0);
+  const fourth = squares.reduce((total, square) => total + square * square, 0);
+  if (!(fourth > 0)) return Math.max(1, squares.length - 1);
+  return Math.max(2, Math.min(squares.length - 1, (NORMAL_KURTOSIS * sum * sum) / fourth));
 }
 
 /** Row sums of the fit in ln units within series, and the Gaussian log-likelihood under the row weights. */

@@ -5,6 +5,12 @@ import type { SlopeLayout } from './slope-layout.ts';
 /** Prior weight, in items, of the variance that a deviation starts from. */
 const PRIOR_ITEMS = 2;
 
+/**
+ * The line's slope has this many times its column's prior spread: with the spread itself four items' price slope was drawn to 0 by 0.03
+ * of −2 (400 generated lines).
+ */
+const LINE_SPREAD = 2;
+
 /** Variance of the items' and of the locations' deviations per column, and how strongly correlated evidence is discounted. */
 export interface VarianceComponents {
   item: Float64Array;
@@ -21,7 +27,10 @@ export function startVarianceComponents(layout: SlopeLayout): VarianceComponents
   return {
     item: Float64Array.from(columns, (column) => startingVariance(column.priorSpread)),
     location: Float64Array.from(columns, (column) => startingVariance(column.priorSpread) / 4),
-    line: Float64Array.from(columns, (column) => column.priorSpread ** 2),
+    line: Float64Array.from(
+      columns,
+      (column) => (column.hasOwnSlopes ? LINE_SPREAD * column.priorSpread : column.priorSpread) ** 2,
+    ),
     itemDesignEffect: 1,
     locationDesignEffect: 1,
     lineDesignEffect: 1,
