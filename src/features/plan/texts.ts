@@ -55,6 +55,7 @@ export const planTexts = {
     locationLabel: 'Locations counted',
     allLocations: 'all',
     model: 'The line’s model',
+    download: 'Download',
   },
   operation: {
     setTo: 'set to',
@@ -102,6 +103,11 @@ export const planTexts = {
     nothingToSave: 'There is nothing to save.',
     lockedLeftOut: '{{weeks}} locked: left as they are.',
     rounded: 'Became {{became}} instead of {{value}}: planned in whole steps.',
+    unmet_one:
+      '{{count}} change can’t be saved any more ({{weeks}}): locked meanwhile, or held by values set under it.',
+    unmet_other:
+      '{{count}} changes can’t be saved any more ({{weeks}}): locked meanwhile, or held by values set under them.',
+    leaveOut: 'Leave out',
     othersSaved: '{{author}} saved version {{number}} meanwhile; your changes will be joined to it.',
   },
   refuse: {

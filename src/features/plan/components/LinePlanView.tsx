@@ -17,6 +17,7 @@ import { formatInstant, formatNumber, personLocale, shortWeekLabel, weekLabel } 
 import { useSession } from '../../../lib/session.ts';
 import { buildColumns, defaultWindow, type GridColumn } from '../grid-columns.ts';
 import { buildRows, rowModes, type GridRow, type RowMode } from '../grid-rows.ts';
+import { downloadText, writeGridCsv } from '../grid-csv.ts';
 import type { GridViewRow } from '../grid-table.ts';
 import {
   asVersion,
@@ -478,6 +479,18 @@ export function LinePlanView({
     return take(step, chosen.locked);
   }
 
+  /** What others have locked or fixed meanwhile, so that it can't be saved any more. */
+  const unmet = hasEdits && readsVersion === null ? currentFigures.unmet : [];
+  function leaveUnmetOut(): void {
+    const settled = unmet.map(({ edit, weekStart }) => ({
+      scope: edit.scope,
+      weekStart,
+      keep: 'theirs' as const,
+      yours: 0,
+    }));
+    replace(settleEdits(compacted, settled), edits.baseVersion ?? shownNumber);
+  }
+
   function openSave(): void {
     save.reset();
     setSaveOpen(true);
@@ -688,6 +701,22 @@ export function LinePlanView({
                   {t('versions.title')}
                 </Button>
                 <ActLink to={withCategory(`/lines/${lineId}`, plan.category.id)}>{t('tools.model')}</ActLink>
+                <Button
+                  variant="text"
+                  onClick={() =>
+                    downloadText(
+                      `${plan.line.name} ${columns[0]?.fullLabel ?? ''} ${columns.at(-1)?.fullLabel ?? ''}.csv`,
+                      writeGridCsv(
+                        viewRows,
+                        columns,
+                        { corner: t(`grid.corner.${page.down}`), sold: t('cell.sold'), planned: t('cell.plan') },
+                        ownMark,
+                      ),
+                    )
+                  }
+                >
+                  {t('tools.download')}
+                </Button>
                 {(mayEdit || hasEdits) && (
                   <>
                     <Button variant="text" disabled={edits.done.length === 0} onClick={undo}>
@@ -734,6 +763,18 @@ export function LinePlanView({
                     {notice.text}
                   </span>
                   <CloseButton label={common('close')} onClick={() => setNotice(null)} />
+                </p>
+              ) : unmet.length > 0 ? (
+                <p className="flex min-h-[34px] flex-wrap items-center gap-x-4 font-[560] text-madder">
+                  <span className="border-l-2 border-madder pl-3">
+                    {t('edits.unmet', {
+                      count: unmet.length,
+                      weeks: [...new Set(unmet.map(({ weekStart }) => shortWeekLabel(weekStart)))].sort().join(', '),
+                    })}
+                  </span>
+                  <Button variant="text" onClick={leaveUnmetOut}>
+                    {t('edits.leaveOut')}
+                  </Button>
                 </p>
               ) : (
                 <GridKey
