@@ -1,5 +1,5 @@
 import { useQueries, useQuery } from '@tanstack/react-query';
-import { useState, type ReactNode } from 'react';
+import { useState } from 'react';
 import { useTranslation } from 'react-i18next';
 import type { LinePlan } from '../../../../shared/contracts/plan.ts';
 import { scopeHolds, scopesMeet } from '../../../../shared/domain/override-arithmetic.ts';
@@ -25,6 +25,7 @@ import { findRange, rowOfVersion, type LineFigures, type RowFigures } from '../l
 import type { PendingEdit } from '../pending-edits.ts';
 import { versionsQuery, versionStateQuery } from '../queries.ts';
 import { RangeDrawing } from './RangeDrawing.tsx';
+import { WhyParts } from './WhyParts.tsx';
 
 const mostEarlier = 8;
 
@@ -82,7 +83,7 @@ function SoldCell({ plan, row, column, figures }: WhyDrawerProps) {
         </p>
       )}
       {lastYear !== undefined && lastYear !== null && <p>{t('why.lastYear', { units: formatNumber(lastYear) })}</p>}
-      <Promotions plan={plan} row={row} weekStart={column.weekStart} uplift={null} />
+      <Promotions plan={plan} row={row} weekStart={column.weekStart} />
     </div>
   );
 }
@@ -95,19 +96,10 @@ function PlannedCell({ plan, row, column, figures, lineFigures, pending, describ
   const sum = (values: (number | null | undefined)[]) => values.reduce<number>((total, each) => total + (each ?? 0), 0);
   const model = figures.model[week] ?? 0;
   const held = figures.plan[week] ?? 0;
-  // The model is rounded to unit steps with the remainder carried on, the base isn't: less than a step per series is rounding, not uplift.
-  const unitSteps = new Map(plan.items.map(({ id, unitStep }) => [id, unitStep]));
-  const rounding = sum(series.map(({ itemId }) => unitSteps.get(itemId)));
-  const unrounded = sum(series.map((each) => each.base[week]));
-  const isPromoted = findPromotions(plan, row, column.weekStart).length > 0;
-  const base = !isPromoted && Math.abs(model - unrounded) <= rounding ? model : roundToShow(unrounded);
-  const uplift = model - base;
-  const moved = held - model;
   const lastYears = series.map((each) => each.lastYear[week]);
   const lastYear = lastYears.some((each) => each !== null && each !== undefined) ? sum(lastYears) : null;
   const range = findRange(plan, row);
   const marks = figures.marks[week];
-  const largest = Math.max(base, model, held, base + uplift, 1);
   const averaged = series.filter(({ method }) => method === 'simple-average').length;
   const prices = series.map((each) => each.price[week]);
   const hasPrices = prices.length > 0 && prices.every((price) => price !== null && price !== undefined);
@@ -129,65 +121,15 @@ function PlannedCell({ plan, row, column, figures, lineFigures, pending, describ
   );
   return (
     <>
-      <table className="plan-parts">
-        <caption className="sr-only">{t('why.parts')}</caption>
-        <thead>
-          <tr>
-            <th scope="col">{t('why.part')}</th>
-            <th aria-hidden="true" />
-            <th scope="col" className="num">
-              {t('why.units')}
-            </th>
-          </tr>
-        </thead>
-        <tbody>
-          <Part label={t('why.base')} units={formatNumber(base)} from={0} to={base} largest={largest} colour="sky" />
-          {Math.abs(uplift) > 1e-9 && (
-            <Part
-              label={t('why.uplift')}
-              units={formatSigned(uplift)}
-              from={base}
-              to={model}
-              largest={largest}
-              colour="pennant"
-              textColour="text-turmeric"
-            />
-          )}
-          <Part
-            label={t('why.modelMean')}
-            units={formatNumber(model)}
-            from={0}
-            to={model}
-            largest={largest}
-            colour="sky"
-            textColour="text-sky"
-            isSum
-          />
-          {Math.abs(moved) > 1e-9 && !Number.isNaN(held) && (
-            <Part
-              label={t('why.overrides')}
-              units={formatSigned(moved)}
-              from={model}
-              to={held}
-              largest={largest}
-              colour="plum"
-              textColour="text-plum"
-            />
-          )}
-        </tbody>
-        <tfoot>
-          <tr>
-            <th scope="row" colSpan={2}>
-              {t('why.plan')}
-            </th>
-            <td className="num">
-              <span className={Math.abs(moved) > 1e-9 ? 'over' : ''}>
-                {Number.isNaN(held) ? '–' : formatNumber(held)}
-              </span>
-            </td>
-          </tr>
-        </tfoot>
-      </table>
+      <WhyParts
+        plan={plan}
+        row={row}
+        weekStart={column.weekStart}
+        shownPlan={held}
+        hasUnsaved={unsaved.length > 0}
+        promotions={[...new Set(findPromotions(plan, row, column.weekStart).map(({ name: promotion }) => promotion))]}
+        lockedIn={column.isLocked ? lockVersion(plan, column.weekStart) : null}
+      />
 
       <div className="mt-2 flex flex-col gap-1 text-small">
         {column.isLocked && <p>{t('why.locked', { version: lockVersion(plan, column.weekStart) })}</p>}
@@ -205,8 +147,7 @@ function PlannedCell({ plan, row, column, figures, lineFigures, pending, describ
             {series.length === 1 ? t('why.averageOne') : t('why.average', { count: averaged, of: series.length })}
           </p>
         )}
-        <Promotions plan={plan} row={row} weekStart={column.weekStart} uplift={uplift} />
-        {!isPromoted && Math.abs(uplift) > 1e-9 && <p>{t('why.around')}</p>}
+        <Promotions plan={plan} row={row} weekStart={column.weekStart} />
       </div>
 
       <h3 className="mt-3 text-[14px]/[18px]">{t('why.range')}</h3>
@@ -285,11 +226,6 @@ function PlannedCell({ plan, row, column, figures, lineFigures, pending, describ
   );
 }
 
-/** The base to whole units, or to a decimal where there are few. */
-function roundToShow(units: number): number {
-  return Math.abs(units) < 10 ? Math.round(units * 10) / 10 : Math.round(units);
-}
-
 function findPromotions(plan: LinePlan, row: GridRow, weekStart: string) {
   const series = row.seriesIndexes.flatMap((index) => plan.series[index] ?? []);
   return plan.promotions.filter(
@@ -318,79 +254,12 @@ export function describeOperation(
   return t('operation.didClear');
 }
 
-const barWidth = 84;
-
-function Part({
-  label,
-  units,
-  from,
-  to,
-  largest,
-  colour,
-  textColour = '',
-  isSum = false,
-}: {
-  label: ReactNode;
-  units: string;
-  from: number;
-  to: number;
-  largest: number;
-  colour: string;
-  textColour?: string;
-  isSum?: boolean;
-}) {
-  const x = (value: number) => (Math.max(0, value) / largest) * (barWidth - 2);
-  const left = Math.min(x(from), x(to));
-  const width = Math.max(1, Math.abs(x(to) - x(from)));
-  const takesAway = to < from;
-  return (
-    <tr className={isSum ? 'is-sum' : ''}>
-      <th scope="row" className={textColour}>
-        {label}
-      </th>
-      <td aria-hidden="true">
-        <svg width={barWidth} height="16">
-          {takesAway ? (
-            <rect
-              x={left + 0.5}
-              y="4.5"
-              width={Math.max(1, width - 1)}
-              height="7"
-              fill="none"
-              stroke={`var(--${colour})`}
-            />
-          ) : (
-            <rect x={left} y="4" width={width} height="8" fill={`var(--${colour})`} />
-          )}
-          <path d={`M${x(to)} 4V16`} stroke="var(--rule)" strokeWidth=".8" />
-        </svg>
-      </td>
-      <td className={`num ${textColour}`}>{units}</td>
-    </tr>
-  );
-}
-
-function Promotions({
-  plan,
-  row,
-  weekStart,
-  uplift,
-}: {
-  plan: LinePlan;
-  row: GridRow;
-  weekStart: string;
-  uplift: number | null;
-}) {
+function Promotions({ plan, row, weekStart }: { plan: LinePlan; row: GridRow; weekStart: string }) {
   const { t } = useTranslation('plan');
   const promotions = findPromotions(plan, row, weekStart);
   if (promotions.length === 0) return null;
   return (
     <>
-      {uplift !== null && Math.abs(uplift) > 1e-9 && (
-        <p>
-          <b className="text-turmeric">{t('why.includes', { units: formatSigned(uplift) })}</b>
-        </p>
-      )}
       <ul>
         {promotions.slice(0, 4).map((promotion, index) => {
           const facts = [
