@@ -30,6 +30,11 @@ export interface Effect {
   share: EffectShare | null;
 }
 
+/** Share of the ups and downs within the series that the fit explains, 0…1. */
+export function readExplainedShare({ rSquared, diagnosis }: Fit): number {
+  return diagnosis?.rSquaredWithin ?? rSquared;
+}
+
 const spoken: Readonly<Record<string, { sentence: string; move: number }>> = {
   'regular price': { sentence: 'regular-price', move: Math.log(1.1) },
   'price paid': { sentence: 'price-paid', move: Math.log(1.1) },
@@ -48,12 +53,15 @@ const spoken: Readonly<Record<string, { sentence: string; move: number }>> = {
   trend: { sentence: 'trend', move: 1 },
 };
 
+/** Size and error, in ln units, up to which a coefficient was held at 0 by a penalty. */
+const takenAsNone = 1e-6;
+
 const holidayPattern = /^(.*): week (before|of|after)$/;
 const wavePattern = /^season (sine|cosine) (\d+)$/;
 
 /**
  * Coefficients in ln units, turned into factors of the units for a move that people know; season as one effect, highest against lowest
- * month. One that was taken as none (0 without error: its sign couldn't be) is left out. `diagnosed`: what the fit's diagnosis says of each.
+ * month. One that was taken as none (0 with hardly any error, by a penalty: its sign couldn't be) is left out. `diagnosed`: what the fit's diagnosis says of each.
  */
 export function listEffects(
   coefficients: readonly Coefficient[],
@@ -61,7 +69,10 @@ export function listEffects(
 ): Effect[] {
   const diagnosisOf = new Map(diagnosed.map((effect) => [effect.name, effect]));
   const effects = coefficients
-    .filter(({ group, estimate, standardError }) => group !== 'season' && (estimate !== 0 || standardError !== 0))
+    .filter(
+      ({ group, estimate, standardError }) =>
+        group !== 'season' && Math.max(Math.abs(estimate), standardError) > takenAsNone,
+    )
     .map((coefficient) => toEffect(coefficient, diagnosisOf.get(coefficient.name)));
   const season = readSeason(coefficients, diagnosed);
   return season ? [...effects, season] : effects;

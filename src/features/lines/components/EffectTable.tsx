@@ -10,6 +10,7 @@ import { type Effect, listEffects, readSeasonSpan } from '../effects.ts';
 import { EvidenceBar } from './EvidenceBar.tsx';
 
 const chartWidth = 196;
+const tickGap = 36;
 
 type Names = LineFitView['names'];
 type SeasonMonths = { high: string; low: string } | null;
@@ -77,7 +78,7 @@ function EffectSentences({
   const reach = Math.min(Math.log(6), Math.max(Math.log(1.5), ...ends.map((factor) => Math.abs(Math.log(factor)))));
   const xOf = (factor: number) =>
     chartWidth / 2 + (Math.max(-reach, Math.min(reach, Math.log(factor))) / reach) * (chartWidth / 2 - 14);
-  const ticks = [0.25, 0.5, 1, 2, 4].filter((factor) => Math.abs(Math.log(factor)) <= reach * 0.95);
+  const ticks = chooseTicks(reach, xOf);
   return (
     <table className="w-full border-collapse">
       <caption className="sr-only">{t('effects.caption')}</caption>
@@ -120,7 +121,7 @@ function EffectSentences({
             <svg width={chartWidth} height="16" className="block">
               {ticks.map((factor) => (
                 <text key={factor} x={xOf(factor)} y="12" textAnchor="middle" fontSize="11" fill="var(--soft)">
-                  {formatFactor(factor, factor >= 1 ? 0 : 2)}
+                  {formatFactor(factor, factor % 1 === 0 ? 0 : factor > 1 ? 1 : 2)}
                 </text>
               ))}
             </svg>
@@ -130,6 +131,16 @@ function EffectSentences({
       </tfoot>
     </table>
   );
+}
+
+/** Round factors within reach whose labels don't touch, × 1 first. */
+function chooseTicks(reach: number, xOf: (factor: number) => number): number[] {
+  const chosen: number[] = [];
+  for (const factor of [1, 2, 0.5, 4, 0.25, 1.5, 0.75]) {
+    const isWithin = Math.abs(Math.log(factor)) <= reach * 0.95;
+    if (isWithin && chosen.every((other) => Math.abs(xOf(other) - xOf(factor)) >= tickGap)) chosen.push(factor);
+  }
+  return chosen;
 }
 
 /** `14 % more`, `6.1 % less`, `as much`. */
@@ -148,7 +159,10 @@ function Sentence({ effect, names, seasonMonths }: { effect: Effect; names: Name
   const { share, inseparableFrom, low, high } = effect;
   const isInseparable = inseparableFrom.length > 0;
   const range = () => {
-    if (isInseparable) return t('effects.inseparable', { others: inseparableFrom.join(', ') });
+    if (isInseparable)
+      return t('effects.inseparable', {
+        others: inseparableFrom.map((name) => t('effects.quoted', { name })).join(', '),
+      });
     if (low === null || high === null) return t('effects.noRange');
     return t(effect.isUncertain ? 'effects.uncertain' : 'effects.range', { low: change(low), high: change(high) });
   };
@@ -189,7 +203,7 @@ function Whisker({ effect, xOf, ticks }: { effect: Effect; xOf: (factor: number)
   const isInseparable = effect.inseparableFrom.length > 0;
   const { low, high } = effect;
   return (
-    <svg width={chartWidth} height="100%" className="block min-h-[52px]" aria-hidden="true">
+    <svg width={chartWidth} className="block h-full min-h-[52px]" aria-hidden="true">
       {ticks.map((factor) => (
         <line
           key={factor}
@@ -270,7 +284,9 @@ function EffectFigures({
                 {t(`effects.subject.${effect.sentence}`, { name: effect.name, ...seasonMonths })}
                 {effect.inseparableFrom.length > 0 && (
                   <span className="block text-turmeric">
-                    {t('effects.inseparable', { others: effect.inseparableFrom.join(', ') })}
+                    {t('effects.inseparable', {
+                      others: effect.inseparableFrom.map((name) => t('effects.quoted', { name })).join(', '),
+                    })}
                   </span>
                 )}
               </th>

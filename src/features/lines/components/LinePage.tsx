@@ -11,12 +11,14 @@ import { describeError } from '../../../lib/api.ts';
 import { withCategory } from '../../../lib/categories.ts';
 import { formatInstant, formatPercent, formatUnits } from '../../../lib/format.ts';
 import { useTitle } from '../../../lib/use-title.ts';
+import { readExplainedShare } from '../effects.ts';
 import { lineFitQuery } from '../queries.ts';
 import { EffectTable } from './EffectTable.tsx';
 import { ExpertDrawer } from './ExpertDrawer.tsx';
 import { FindingList } from './FindingList.tsx';
 import { FitFacts } from './FitFacts.tsx';
 import { LineOutlook } from './LineOutlook.tsx';
+import { RivalTable } from './RivalTable.tsx';
 
 export function LinePage() {
   const { t } = useTranslation('lines');
@@ -46,7 +48,7 @@ function LineView({ view }: { view: LineFitView }) {
             when: formatInstant(fit.at),
             rows: formatUnits(fit.rows),
             week: weekLabel(fit.salesTo),
-            explained: formatPercent(fit.rSquared, 0),
+            explained: formatPercent(readExplainedShare(fit), 0),
           })
         }
         actions={<ActLink to={withCategory(`/plan/${line.id}`, category.id)}>{t('toPlan')}</ActLink>}
@@ -64,6 +66,7 @@ function LineView({ view }: { view: LineFitView }) {
         <div className="mt-4 grid grid-cols-1 gap-x-11 gap-y-8 min-[1100px]:grid-cols-[minmax(0,7fr)_minmax(0,5fr)]">
           <div className="grid min-w-0 grid-cols-[minmax(0,1fr)] content-start gap-8">
             <EffectTable fit={fit} names={names} />
+            {fit.scores.length > 0 && <RivalTable fit={fit} />}
           </div>
           <div className="grid min-w-0 grid-cols-[minmax(0,1fr)] content-start gap-8">
             <LineOutlook lineId={line.id} />

@@ -1,14 +1,23 @@
+import { useState } from 'react';
 import { useTranslation } from 'react-i18next';
 import type { LineFitView } from '../../../../shared/contracts/lines.ts';
+import { Button } from '../../../components/Button.tsx';
 import { Section } from '../../../components/Page.tsx';
 import { Table } from '../../../components/Table.tsx';
 import { formatPercent, formatSignedPercent, formatUnits } from '../../../lib/format.ts';
 
+const few = 6;
+
 /** The specifications that were compared, best first: which was chosen, which are averaged in, how far the others are behind. */
 export function RivalTable({ fit }: { fit: NonNullable<LineFitView['fit']> }) {
   const { t } = useTranslation('lines');
+  const [areAllShown, setAllShown] = useState(false);
   const { name, averagedWith } = fit.specification;
   const averaged: readonly unknown[] = Array.isArray(averagedWith) ? averagedWith : [];
+  const shown = fit.scores.filter(
+    ({ specification }, rank) =>
+      areAllShown || rank < few || specification === name || averaged.includes(specification),
+  );
   const best = Math.min(...fit.scores.map(({ crps }) => crps));
   return (
     <Section title={t('scores.title')}>
@@ -28,7 +37,7 @@ export function RivalTable({ fit }: { fit: NonNullable<LineFitView['fit']> }) {
           </tr>
         </thead>
         <tbody>
-          {fit.scores.map(({ specification, crps, wape }) => {
+          {shown.map(({ specification, crps, wape }) => {
             const isChosen = specification === name;
             return (
               <tr key={specification} className={isChosen ? 'font-[600]' : undefined}>
@@ -47,6 +56,11 @@ export function RivalTable({ fit }: { fit: NonNullable<LineFitView['fit']> }) {
           })}
         </tbody>
       </Table>
+      {fit.scores.length > few && (
+        <Button variant="text" onClick={() => setAllShown(!areAllShown)}>
+          {areAllShown ? t('scores.fewer') : t('scores.all', { n: fit.scores.length })}
+        </Button>
+      )}
       <p className="mt-2 text-small text-soft">{t('scores.note')}</p>
     </Section>
   );

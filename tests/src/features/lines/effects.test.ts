@@ -57,6 +57,7 @@ describe('effects', () => {
 
   it('leave out what was taken as none', () => {
     expect(listEffects([coefficient('coupon', 'promotion', 0, 0)])).toEqual([]);
+    expect(listEffects([coefficient('coupon', 'promotion', 0, 1e-9)])).toEqual([]);
   });
 
   it('say which items lie lowest and highest, as factors, and whose evidence it is', () => {
