@@ -2,12 +2,25 @@ import { cpus, loadavg } from 'node:os';
 import { parseArgs } from 'node:util';
 import { forecastCategoryRow, forecastLineRow } from './bench/forecast-rows.ts';
 import { fitGrowth, fitLarge, fitSmall, leaveOneOutRow } from './bench/least-squares-rows.ts';
+import { firstPage, readGrid } from './bench/server-rows.ts';
+import { readXlsx, writePackRow } from './bench/workbook-rows.ts';
 import type { BenchRow, Figure } from './bench/measure.ts';
 import { listMissed, printFigures } from './bench/print-figures.ts';
 import { ensureSystemPackages } from './debian-packages.ts';
 import { PlainFailure, runCommand } from './plain-failure.ts';
 
-const rows: readonly BenchRow[] = [fitSmall, fitLarge, leaveOneOutRow, fitGrowth, forecastLineRow, forecastCategoryRow];
+const rows: readonly BenchRow[] = [
+  fitSmall,
+  fitLarge,
+  leaveOneOutRow,
+  fitGrowth,
+  readXlsx,
+  writePackRow,
+  readGrid,
+  firstPage,
+  forecastLineRow,
+  forecastCategoryRow,
+];
 
 const usage = `npm run bench [-- rows… [--lines N]]
   --lines N: forecast-category with N lines in place of 500

@@ -3,12 +3,11 @@ import { categories, firstWeek, historyWeeks, locations } from '../../../seed-da
 import { generateCalendar, generateSales, type CalendarRow, type SalesRow } from '../../../seed-data/generate-sales.ts';
 import { addWeeks } from '../../../shared/domain/weeks.ts';
 
-const itemsPerLine = 12;
 /** One location: a line of 12 items × 156 weeks. */
 const at = locations.slice(0, 1);
 
-/** `lines` lines of 12 items, which sell after the patterns of the demo company's lines in turn. */
-export function inventCategory(name: string, lines: number): DemoCategory {
+/** `lines` lines of 12 (or other) items, which sell after the patterns of the demo company's lines in turn. */
+export function inventCategory(name: string, lines: number, itemsPerLine = 12): DemoCategory {
   const patterns = categories.flatMap((category) => category.lines);
   return {
     name,

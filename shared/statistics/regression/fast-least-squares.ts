@@ -1,8 +1,8 @@
 import { InvalidInputError, TooFewRowsError } from '../errors.ts';
 import { estimateCondition, factorCholesky, solveCholesky } from '../matrix/cholesky.ts';
-import { computeGram } from '../matrix/gram.ts';
 import { invertUpper } from '../matrix/triangular.ts';
-import { checkLeastSquaresInput, countWeightedRows } from './input-check.ts';
+import { openTile, tileRows } from '../simd/kernels.ts';
+import { checkLeastSquaresInput, checkLeastSquaresShape, countWeightedRows } from './input-check.ts';
 import { fitLeastSquares } from './least-squares.ts';
 import type { LeastSquaresFit, LeastSquaresInput } from './types.ts';
 
@@ -17,15 +17,11 @@ const smallestPivot = 1e-6;
 export interface NormalEquations {
   input: LeastSquaresInput;
   weightedRows: number;
-  /** √w·X with each column scaled by a power of two to length 1 … 2, column-major. */
-  scaledDesign: Float64Array;
-  /** What each column was divided by; 0 for a column of zeros. */
+  /** Powers of two that bring each column of √w·X to length 1 … 2 when it is divided by them; 0 for a column of zeros. */
   scales: Float64Array;
-  /** √w·y. */
-  target: Float64Array;
-  /** columns × columns, row-major. */
+  /** XᵀWX of the columns thus divided; columns × columns, row-major. */
   gram: Float64Array;
-  /** Xᵀy on the scaled columns. */
+  /** XᵀWy of the columns thus divided. */
   moments: Float64Array;
 }
 
@@ -44,111 +40,151 @@ export interface Specification {
   withLeverages?: boolean;
 }
 
+/**
+ * Lays rows `from` … of √w·X, and of √w·y as a last column if `response` is given, into a tile, eight rows (a line of the processor's cache) at a time.
+ * Rows after the last one become 0.
+ */
+function fillTile(
+  values: Float64Array,
+  { design, rows, columns: width, weights }: LeastSquaresInput,
+  columns: readonly number[],
+  response: Float64Array | null,
+  from: number,
+): void {
+  const size = columns.length;
+  const count = Math.min(tileRows, rows - from);
+  if (count < tileRows) values.fill(0);
+  for (let start = 0; start < count; start += 8) {
+    const end = Math.min(count, start + 8);
+    for (let k = 0; k < size; k++) {
+      const to = k * tileRows;
+      for (let r = start, p = (from + start) * width + columns[k]!; r < end; r++, p += width)
+        values[to + r] = design[p]!;
+    }
+    if (response) for (let r = start; r < end; r++) values[size * tileRows + r] = response[from + r]!;
+  }
+  if (!weights) return;
+  const filled = response ? size + 1 : size;
+  for (let r = 0; r < count; r++) {
+    const root = Math.sqrt(weights[from + r]!);
+    for (let k = 0; k < filled; k++) values[k * tileRows + r]! *= root;
+  }
+}
+
 /** Builds the normal equations of `input` once. Throws as fitLeastSquares does for NaN, ±∞ and lengths that don't fit. */
 export function buildNormalEquations(input: LeastSquaresInput): NormalEquations {
-  checkLeastSquaresInput(input);
-  const { design, rows, columns, response, weights } = input;
-  const scaledDesign = new Float64Array(rows * columns);
-  const target = new Float64Array(rows);
-  const squares = new Float64Array(columns);
-  for (let i = 0; i < rows; i++) {
-    const root = weights ? Math.sqrt(weights[i]!) : 1;
-    target[i] = root * response[i]!;
-    for (let j = 0; j < columns; j++) {
-      const value = root * design[i * columns + j]!;
-      scaledDesign[j * rows + i] = value;
-      squares[j]! += value * value;
-    }
+  checkLeastSquaresShape(input);
+  const { rows, columns, response } = input;
+  const all = listAll(columns);
+  const tile = openTile(columns + 1);
+  for (let from = 0; from < rows; from += tileRows) {
+    fillTile(tile.values, input, all, response, from);
+    tile.addGram();
   }
-  const scales = squares.map((square) => (square > 0 ? 2 ** Math.floor(Math.log2(square) / 2) : 0));
-  const moments = new Float64Array(columns);
+  const { square, columns: stride } = tile;
+  // A value that isn't finite makes its column's square not finite, so that the values need a look of their own only then.
+  for (let j = 0; j <= columns; j++) if (!Number.isFinite(square[j * stride + j])) checkLeastSquaresInput(input);
+  const scales = new Float64Array(columns);
+  const inverses = new Float64Array(columns);
   for (let j = 0; j < columns; j++) {
-    const factor = scales[j]! > 0 ? 1 / scales[j]! : 0;
-    let moment = 0;
-    for (let i = 0, p = j * rows; i < rows; i++, p++) {
-      const value = scaledDesign[p]! * factor;
-      scaledDesign[p] = value;
-      moment += value * target[i]!;
-    }
-    moments[j] = moment;
+    const length = square[j * stride + j]!;
+    scales[j] = length > 0 ? 2 ** Math.floor(Math.log2(length) / 2) : 0;
+    inverses[j] = length > 0 ? 1 / scales[j]! : 0;
   }
-  const gram = computeGram(scaledDesign, rows, columns);
-  return { input, weightedRows: countWeightedRows(input), scaledDesign, scales, target, gram, moments };
+  const gram = new Float64Array(columns * columns);
+  const moments = new Float64Array(columns);
+  for (let i = 0; i < columns; i++) {
+    for (let j = i; j < columns; j++) {
+      const product = square[i * stride + j]! * inverses[i]! * inverses[j]!;
+      gram[i * columns + j] = product;
+      gram[j * columns + i] = product;
+    }
+    moments[i] = square[i * stride + columns]! * inverses[i]!;
+  }
+  return { input, weightedRows: countWeightedRows(input), scales, gram, moments };
 }
 
-/** target − X·b on the scaled columns, four columns to a pass. */
-function computeRemainder(
-  equations: NormalEquations,
-  columns: readonly number[],
-  solution: Float64Array,
+function listAll(columns: number): number[] {
+  return Array.from({ length: columns }, (_, j) => j);
+}
+
+/** Writes y − X·b to `residuals`, four rows at a time. columns: those of the design that `coefficients` belong to. */
+function computeResiduals(
+  { design, rows, columns: width, response }: LeastSquaresInput,
+  columns: Int32Array,
+  coefficients: Float64Array,
+  residuals: Float64Array,
+): void {
+  const size = columns.length;
+  let i = 0;
+  for (; i + 4 <= rows; i += 4) {
+    const start = i * width;
+    let a = 0;
+    let b = 0;
+    let c = 0;
+    let d = 0;
+    for (let k = 0; k < size; k++) {
+      const at = start + columns[k]!;
+      const factor = coefficients[k]!;
+      a += design[at]! * factor;
+      b += design[at + width]! * factor;
+      c += design[at + 2 * width]! * factor;
+      d += design[at + 3 * width]! * factor;
+    }
+    residuals[i] = response[i]! - a;
+    residuals[i + 1] = response[i + 1]! - b;
+    residuals[i + 2] = response[i + 2]! - c;
+    residuals[i + 3] = response[i + 3]! - d;
+  }
+  for (; i < rows; i++) {
+    let sum = 0;
+    for (let k = 0; k < size; k++) sum += design[i * width + columns[k]!]! * coefficients[k]!;
+    residuals[i] = response[i]! - sum;
+  }
+}
+
+/** XᵀW·e, four rows at a time. */
+function computeGaps(
+  { design, rows, columns: width, weights }: LeastSquaresInput,
+  columns: Int32Array,
+  residuals: Float64Array,
 ): Float64Array {
-  const { scaledDesign, target } = equations;
-  const rows = target.length;
-  const remainder = target.slice();
-  let k = 0;
-  for (; k + 4 <= columns.length; k += 4) {
-    const a = columns[k]! * rows;
-    const b = columns[k + 1]! * rows;
-    const c = columns[k + 2]! * rows;
-    const d = columns[k + 3]! * rows;
-    const factorA = solution[k]!;
-    const factorB = solution[k + 1]!;
-    const factorC = solution[k + 2]!;
-    const factorD = solution[k + 3]!;
-    for (let i = 0; i < rows; i++) {
-      remainder[i]! -=
-        scaledDesign[a + i]! * factorA +
-        scaledDesign[b + i]! * factorB +
-        scaledDesign[c + i]! * factorC +
-        scaledDesign[d + i]! * factorD;
+  const pulls = weights ? residuals.map((residual, i) => residual * weights[i]!) : residuals;
+  const size = columns.length;
+  const gaps = new Float64Array(size);
+  let i = 0;
+  for (; i + 4 <= rows; i += 4) {
+    const start = i * width;
+    const a = pulls[i]!;
+    const b = pulls[i + 1]!;
+    const c = pulls[i + 2]!;
+    const d = pulls[i + 3]!;
+    for (let k = 0; k < size; k++) {
+      const at = start + columns[k]!;
+      gaps[k]! += design[at]! * a + design[at + width]! * b + design[at + 2 * width]! * c + design[at + 3 * width]! * d;
     }
   }
-  for (; k < columns.length; k++) {
-    const a = columns[k]! * rows;
-    const factor = solution[k]!;
-    for (let i = 0; i < rows; i++) remainder[i]! -= scaledDesign[a + i]! * factor;
+  for (; i < rows; i++) {
+    for (let k = 0; k < size; k++) gaps[k]! += design[i * width + columns[k]!]! * pulls[i]!;
   }
-  return remainder;
+  return gaps;
 }
 
-/** Leverages: squared lengths of the rows of X·U⁻¹, whose columns are orthonormal. */
+/** Leverages: squared lengths of the rows of √w·X·U⁻¹, whose columns are orthonormal. */
 function computeLeverages(equations: NormalEquations, columns: readonly number[], upper: Float64Array): Float64Array {
-  const { scaledDesign, target } = equations;
-  const rows = target.length;
+  const { input, scales } = equations;
+  const { rows } = input;
   const size = columns.length;
   const inverse = invertUpper(upper, size);
+  const tile = openTile(size);
+  for (let k = 0; k < size; k++) {
+    const factor = 1 / scales[columns[k]!]!;
+    for (let c = k; c < size; c++) tile.square[k * tile.columns + c] = factor * inverse[k * size + c]!;
+  }
   const leverages = new Float64Array(rows);
-  const chunk = 512;
-  const column = new Float64Array(chunk);
-  for (let from = 0; from < rows; from += chunk) {
-    const count = Math.min(chunk, rows - from);
-    for (let c = 0; c < size; c++) {
-      column.fill(0);
-      let k = 0;
-      for (; k + 4 <= c + 1; k += 4) {
-        const a = columns[k]! * rows + from;
-        const b = columns[k + 1]! * rows + from;
-        const d = columns[k + 2]! * rows + from;
-        const e = columns[k + 3]! * rows + from;
-        const fa = inverse[k * size + c]!;
-        const fb = inverse[(k + 1) * size + c]!;
-        const fd = inverse[(k + 2) * size + c]!;
-        const fe = inverse[(k + 3) * size + c]!;
-        for (let i = 0; i < count; i++) {
-          column[i]! +=
-            scaledDesign[a + i]! * fa +
-            scaledDesign[b + i]! * fb +
-            scaledDesign[d + i]! * fd +
-            scaledDesign[e + i]! * fe;
-        }
-      }
-      for (; k <= c; k++) {
-        const a = columns[k]! * rows + from;
-        const factor = inverse[k * size + c]!;
-        for (let i = 0; i < count; i++) column[i]! += scaledDesign[a + i]! * factor;
-      }
-      for (let i = 0; i < count; i++) leverages[from + i]! += column[i]! * column[i]!;
-    }
+  for (let from = 0; from < rows; from += tileRows) {
+    fillTile(tile.values, input, columns, null, from);
+    leverages.set(tile.measureRows().subarray(0, Math.min(tileRows, rows - from)), from);
   }
   for (let i = 0; i < rows; i++) if (leverages[i]! > 1) leverages[i] = 1;
   return leverages;
@@ -184,10 +220,10 @@ function fitByQr(input: LeastSquaresInput, columns: readonly number[], penalties
  * Coefficients are in the order of the whole design. Throws TooFewRowsError as fitLeastSquares does.
  */
 export function fitSpecification(equations: NormalEquations, specification: Specification = {}): FastLeastSquaresFit {
-  const { input, gram, moments, scales, scaledDesign, weightedRows } = equations;
-  const { rows, columns: width, design, weights, response } = input;
+  const { input, gram, moments, scales, weightedRows } = equations;
+  const { rows, columns: width, weights, response } = input;
   const penalties = specification.penalties ?? input.penalties;
-  const columns = specification.columns ?? Array.from({ length: width }, (_, j) => j);
+  const columns = specification.columns ?? listAll(width);
   columns.forEach((j, k) => {
     if (!Number.isInteger(j) || j < 0 || j >= width || (k > 0 && j <= columns[k - 1]!)) {
       throw new InvalidInputError('the columns of a specification must be ascending indices of the design');
@@ -216,41 +252,33 @@ export function fitSpecification(equations: NormalEquations, specification: Spec
     size,
     columns.map((j) => moments[j]!),
   );
-  const first = computeRemainder(equations, columns, solution);
-  const gap = new Float64Array(size);
+  const listed = Int32Array.from(columns);
+  const estimate = new Float64Array(size);
+  for (let k = 0; k < size; k++) estimate[k] = solution[k]! / scales[columns[k]!]!;
+  const residuals = new Float64Array(rows);
+  computeResiduals(input, listed, estimate, residuals);
+  const gaps = computeGaps(input, listed, residuals);
   for (let k = 0; k < size; k++) {
     const j = columns[k]!;
-    let sum = 0;
-    for (let i = 0, p = j * rows; i < rows; i++, p++) sum += scaledDesign[p]! * first[i]!;
-    const scale = scales[j]!;
-    gap[k] = sum - ((penalties?.[j] ?? 0) / (scale * scale)) * solution[k]!;
+    gaps[k] = (gaps[k]! - (penalties?.[j] ?? 0) * estimate[k]!) / scales[j]!;
   }
-  const change = solveCholesky(upper, size, gap);
-  for (let k = 0; k < size; k++) solution[k]! += change[k]!;
+  const change = solveCholesky(upper, size, gaps);
 
-  const remainder = computeRemainder(equations, columns, solution);
   const coefficients: (number | null)[] = Array.from({ length: width }, () => null);
   const factorR = new Float64Array(size * size);
   for (let k = 0; k < size; k++) {
     const scale = scales[columns[k]!]!;
-    coefficients[columns[k]!] = solution[k]! / scale;
+    estimate[k]! += change[k]! / scale;
+    coefficients[columns[k]!] = estimate[k]!;
     for (let r = 0; r <= k; r++) factorR[r * size + k] = upper[r * size + k]! * scale;
   }
+  computeResiduals(input, listed, estimate, residuals);
   const fitted = new Float64Array(rows);
-  const residuals = new Float64Array(rows);
   let residualSumOfSquares = 0;
   for (let i = 0; i < rows; i++) {
-    const root = weights ? Math.sqrt(weights[i]!) : 1;
-    residualSumOfSquares += remainder[i]! * remainder[i]!;
-    if (root > 0) {
-      residuals[i] = remainder[i]! / root;
-      fitted[i] = response[i]! - residuals[i]!;
-    } else {
-      let value = 0;
-      for (const j of columns) value += design[i * width + j]! * coefficients[j]!;
-      fitted[i] = value;
-      residuals[i] = response[i]! - value;
-    }
+    const residual = residuals[i]!;
+    fitted[i] = response[i]! - residual;
+    residualSumOfSquares += (weights ? weights[i]! : 1) * residual * residual;
   }
   return {
     coefficients,

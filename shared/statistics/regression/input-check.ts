@@ -8,6 +8,20 @@ export function nameColumn(input: Pick<LeastSquaresInput, 'names'>, column: numb
 
 /** Throws InvalidInputError for lengths that don't fit and negative weights or penalties, NonFiniteInputError for NaN or ±∞. */
 export function checkLeastSquaresInput(input: LeastSquaresInput): void {
+  checkLeastSquaresShape(input);
+  const { design, rows, columns, response } = input;
+  for (let k = 0; k < design.length; k++) {
+    if (!Number.isFinite(design[k])) {
+      throw new NonFiniteInputError(`${nameColumn(input, k % columns)} in row ${Math.floor(k / columns) + 1}`);
+    }
+  }
+  for (let i = 0; i < rows; i++) {
+    if (!Number.isFinite(response[i])) throw new NonFiniteInputError(`the response in row ${i + 1}`);
+  }
+}
+
+/** The same without a look at the values of design and response. */
+export function checkLeastSquaresShape(input: LeastSquaresInput): void {
   const { design, rows, columns, response, weights, penalties, names } = input;
   if (!Number.isInteger(rows) || !Number.isInteger(columns) || rows < 1 || columns < 1) {
     throw new InvalidInputError('a least-squares fit needs at least one row and one column');
@@ -19,14 +33,6 @@ export function checkLeastSquaresInput(input: LeastSquaresInput): void {
     throw new InvalidInputError(`${penalties.length} penalties for ${columns} columns`);
   }
   if (names && names.length !== columns) throw new InvalidInputError(`${names.length} names for ${columns} columns`);
-  for (let k = 0; k < design.length; k++) {
-    if (!Number.isFinite(design[k])) {
-      throw new NonFiniteInputError(`${nameColumn(input, k % columns)} in row ${Math.floor(k / columns) + 1}`);
-    }
-  }
-  for (let i = 0; i < rows; i++) {
-    if (!Number.isFinite(response[i])) throw new NonFiniteInputError(`the response in row ${i + 1}`);
-  }
   checkNonNegative(weights, 'weight');
   checkNonNegative(penalties, 'penalty');
 }
