@@ -59,6 +59,33 @@ describe('logarithmic mean', () => {
     expect(parts[1]).toBeCloseTo(-100 * Math.LN2, 12);
   });
 
+  it('gives activity, structure and intensity of the two-sector example', () => {
+    // Illustration in Ang's papers on LMDI-I (Energy Policy 32 (2004) 1131, 33 (2005) 867), source and data from memory: energy 30 → 80 and 20 → 16, output
+    // 10 → 40 and 40 → 40, so shares 0.2/0.8 → 0.5/0.5 and intensities 3/0.5 → 2/0.4. Parts recomputed in Python as Σ L(E₁, E₀)·ln(factor).
+    const sectors = [
+      { energy: [30, 80], output: [10, 40] },
+      { energy: [20, 16], output: [40, 40] },
+    ] as const;
+    const total = [50, 80] as const;
+    const parts = sectors.map(({ energy, output }) =>
+      shareByLogarithmicMean(energy[0], energy[1], [
+        Math.log(total[1] / total[0]),
+        Math.log(output[1] / total[1] / (output[0] / total[0])),
+        Math.log(energy[1] / output[1] / (energy[0] / output[0])),
+      ]),
+    );
+    const [activity, structure, intensity] = [0, 1, 2].map((k) => parts.reduce((sum, part) => sum + part[k]!, 0));
+    expect(activity).toBeCloseTo(32.3846379109, 9);
+    expect(structure).toBeCloseTo(38.2848673502, 9);
+    expect(intensity).toBeCloseTo(-24.6695052611, 9);
+    expect(activity! + structure! + intensity!).toBeCloseTo(46, 12);
+    // The same as factors of 96 / 50: exp(part / L(96, 50)).
+    const mean = computeLogarithmicMean(96, 50);
+    [1.5828800073, 1.7210198075, 0.704802387].forEach((factor, k) => {
+      expect(Math.exp([activity!, structure!, intensity!][k]! / mean)).toBeCloseTo(factor, 9);
+    });
+  });
+
   it('refuses factors that don’t explain the change, and ends that are not positive', () => {
     expect(() => shareByLogarithmicMean(100, 150, [0.1])).toThrow(InvalidInputError);
     expect(() => shareByLogarithmicMean(0, 150, [0.1])).toThrow(InvalidInputError);
