@@ -39,6 +39,8 @@ const spoken: Readonly<Record<string, { sentence: string; move: number }>> = {
   'regular price': { sentence: 'regular-price', move: Math.log(1.1) },
   'price paid': { sentence: 'price-paid', move: Math.log(1.1) },
   'price cut': { sentence: 'price-cut', move: Math.log(0.8) },
+  'advertised price': { sentence: 'advertised-price', move: Math.log(0.8) },
+  'fresh advertised cut': { sentence: 'fresh-advertised-cut', move: -Math.log(0.8) },
   feature: { sentence: 'feature', move: 1 },
   display: { sentence: 'display', move: 1 },
   'feature only': { sentence: 'feature', move: 1 },

@@ -32,6 +32,8 @@ export const linesTexts = {
       'regular-price': 'A regular price 10 % higher sells <1>{{change}}</1>',
       'price-paid': 'A price 10 % higher sells <1>{{change}}</1>',
       'price-cut': 'A promotion of 20 % off sells <1>{{change}}</1>',
+      'advertised-price': 'Advertised, 20 % off sells <1>{{change}}</1> on top of both',
+      'fresh-advertised-cut': 'The first week of an advertised 20 % off sells <1>{{change}}</1> on top',
       feature: 'Being advertised (feature) sells <1>{{change}}</1>',
       display: 'A second placement (display) sells <1>{{change}}</1>',
       'feature-and-display': 'Feature and display together sell <1>{{change}}</1>',

@@ -103,7 +103,7 @@ function EffectSentences({
             <th scope="row" className="py-1.5 pr-4 text-left font-normal">
               <Sentence effect={effect} names={names} seasonMonths={seasonMonths} />
             </th>
-            <td className="h-px p-0" style={{ width: chartWidth }}>
+            <td className="relative p-0" style={{ width: chartWidth }}>
               <Whisker effect={effect} xOf={xOf} ticks={ticks} />
             </td>
             {hasEvidence && (
@@ -203,7 +203,7 @@ function Whisker({ effect, xOf, ticks }: { effect: Effect; xOf: (factor: number)
   const isInseparable = effect.inseparableFrom.length > 0;
   const { low, high } = effect;
   return (
-    <svg width={chartWidth} className="block h-full min-h-[52px]" aria-hidden="true">
+    <svg width={chartWidth} className="absolute inset-0 h-full" aria-hidden="true">
       {ticks.map((factor) => (
         <line
           key={factor}

@@ -77,8 +77,8 @@ function Criteria({ diagnosis }: { diagnosis: FitDiagnosis }) {
     <div>
       <h3>{t('criteria.title')}</h3>
       <dl className="mt-1 grid grid-cols-1 gap-x-8 sm:grid-cols-2">
-        {facts.map(([term, value]) => (
-          <div key={term} className="flex items-baseline justify-between gap-4 border-b border-line py-1">
+        {facts.map(([term, value], index) => (
+          <div key={index} className="flex items-baseline justify-between gap-4 border-b border-line py-1">
             <dt className="text-soft">{term}</dt>
             <dd className="num">{value}</dd>
           </div>
