@@ -64,7 +64,7 @@ export function describeEvidence(
   );
   const bySlope = [...fitted].sort((a, b) => a.slope - b.slope);
   const lowest = bySlope[0]!;
-  const highest = bySlope.at(-1)!;
+  const highest = bySlope.at(-1);
   return {
     own,
     withOwnSlope,

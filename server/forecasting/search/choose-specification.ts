@@ -103,7 +103,7 @@ function scoreWith(panel: LinePanel, frame: RollingFrame, candidate: RolledCandi
 function listSteps(panel: LinePanel, holidays: readonly HolidayWeek[], frame: RollingFrame): Step[][] {
   const plain = (change: Partial<Specification>): Step => ({ change, isEarned: false });
   const earned = (change: Partial<Specification>): Step => ({ change, isEarned: true });
-  const earliest = frame.origins.at(-1)! + 1;
+  const earliest = frame.origins.at(-1) + 1;
   const groups: Step[][] = [[plain({ advertisedPrice: false })]];
   if (hasRegularPriceMoved(panel)) groups.push([plain({ splitPrice: true })]);
   if (panel.series.length > panel.locations.length) {

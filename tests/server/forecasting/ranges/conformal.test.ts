@@ -11,8 +11,9 @@ import { createNormal, createRandom } from '../../../../server/forecasting/range
 const normal = { p2_5: -1.96, p10: -1.2816, p90: 1.2816, p97_5: 1.96 };
 
 describe('conformal scaling', () => {
-  it('takes the score of rank ⌈(n + 1)(1 − α)⌉ where every week has one cell', () => {
-    const cases = Array.from({ length: 49 }, (_, week) => ({ score: week + 1, week }));
+  it('takes the score of rank ⌈(n + 1)(1 − α)⌉ where weeks hardly differ in age', () => {
+    // 49 weeks of one cell each, so close in time that their weights are equal to nine digits: (49 + 1)·0.8 = 40, (49 + 1)·0.95 = 47.5.
+    const cases = Array.from({ length: 49 }, (_, week) => ({ score: week + 1, week: week / 1e10 }));
     expect(conformalQuantile(cases, 0.2)).toBe(40);
     expect(conformalQuantile(cases, 0.05)).toBe(48);
   });
@@ -28,11 +29,18 @@ describe('conformal scaling', () => {
     expect(conformalQuantile(cases, 0.05)).toBeNull();
   });
 
+  it('listens more to the latest weeks', () => {
+    const calmLately = Array.from({ length: 60 }, (_, week) => ({ score: week < 30 ? 2 : 1, week }));
+    const wildLately = calmLately.map(({ score, week }) => ({ score: 3 - score, week }));
+    expect(conformalQuantile(calmLately, 0.5)).toBe(1);
+    expect(conformalQuantile(wildLately, 0.5)).toBe(2);
+  });
+
   it('widens ranges by the factor that the errors are too large by', () => {
     const draw = createNormal(createRandom(11));
     const errors = Array.from({ length: 4000 }, (_, i): StandardisedError => ({
       value: 1.5 * draw(),
-      week: i,
+      week: i / 1000,
       horizon: 1 + (i % 8),
       kind: (i % 2) as 0 | 1,
     }));
