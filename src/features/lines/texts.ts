@@ -55,6 +55,8 @@ export const linesTexts = {
       'regular-price': 'A regular price 10 % higher',
       'price-paid': 'A price 10 % higher',
       'price-cut': 'A promotion of 20 % off',
+      'advertised-price': '20 % off, advertised, on top of both',
+      'fresh-advertised-cut': 'First week of an advertised 20 % off, on top',
       feature: 'Being advertised (feature)',
       display: 'A second placement (display)',
       'feature-and-display': 'Feature and display together',

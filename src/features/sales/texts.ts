@@ -70,7 +70,7 @@ export const salesTexts = {
     withdrawnNote: 'Withdrawn: its rows are out of force.',
     sameFile: 'The same file was accepted before.',
     sameFileLink: 'Look at it',
-    route: { read: 'read', check: 'checked, yours to accept', held: 'in force' },
+    route: { read: 'read', check: 'checked', yours: 'checked, yours to accept', held: 'in force' },
     routeLabel: 'Where the file stands',
     refusedTitle: 'This file can’t be read',
     locked: {

@@ -40,6 +40,15 @@ describe('effects', () => {
     expect(effect?.low).toBeLessThan(effect?.high ?? 0);
   });
 
+  it('speak of an advertised price and of its first week as what 20 % off adds', () => {
+    const [advertised, fresh] = listEffects([
+      coefficient('advertised price', 'promotion', -0.5),
+      coefficient('fresh advertised cut', 'promotion', 0.5),
+    ]);
+    expect(advertised).toMatchObject({ sentence: 'advertised-price', factor: expect.closeTo(0.8 ** -0.5, 12) });
+    expect(fresh).toMatchObject({ sentence: 'fresh-advertised-cut', factor: expect.closeTo(0.8 ** -0.5, 12) });
+  });
+
   it('turn a dip after a cut into less', () => {
     const [effect] = listEffects([coefficient('cut one week earlier', 'around', -0.4)]);
     expect(effect?.factor).toBeCloseTo(Math.exp(0.4 * Math.log(0.8)), 12);
