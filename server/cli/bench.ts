@@ -2,6 +2,7 @@ import { cpus, loadavg } from 'node:os';
 import { parseArgs } from 'node:util';
 import { forecastCategoryRow, forecastLineRow } from './bench/forecast-rows.ts';
 import { fitGrowth, fitLarge, fitSmall, leaveOneOutRow } from './bench/least-squares-rows.ts';
+import { saveCells } from './bench/save-rows.ts';
 import { firstPage, readGrid } from './bench/server-rows.ts';
 import { readXlsx, writePackRow } from './bench/workbook-rows.ts';
 import type { BenchRow, Figure } from './bench/measure.ts';
@@ -17,6 +18,7 @@ const rows: readonly BenchRow[] = [
   readXlsx,
   writePackRow,
   readGrid,
+  saveCells,
   firstPage,
   forecastLineRow,
   forecastCategoryRow,

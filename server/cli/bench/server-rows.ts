@@ -4,60 +4,15 @@ import type { AddressInfo } from 'node:net';
 import { chromium } from '@playwright/test';
 import { buildApp } from '../../app.ts';
 import { openSessions } from '../../features/accounts/sessions.ts';
-import { gatherForecast, saveForecast } from '../../features/plan/forecast.service.ts';
-import type { LineForecast, LineInput } from '../../forecasting/types.ts';
-import { inSnapshot, inTransaction } from '../../lib/database.ts';
 import { readEnv } from '../../lib/env.ts';
 import { openLog } from '../../lib/log.ts';
 import { buildClientIfChanged } from '../client-build.ts';
 import { databaseUrl } from '../cluster.ts';
 import { PlainFailure } from '../plain-failure.ts';
 import { chromiumPath } from '../system-programs.ts';
-import { storeCategory, withBenchDatabase, type BenchDatabase } from './bench-database.ts';
-import { inventCategory } from './invented-range.ts';
+import { withBenchDatabase, type BenchDatabase } from './bench-database.ts';
 import { takeTurns, writeDuration, type BenchRow } from './measure.ts';
-
-/** A forecast that follows from the place of its figures: what is read and shown doesn't depend on how good it is. */
-function inventForecast(input: LineInput): LineForecast {
-  const along = (factor: number, series: number) =>
-    Float64Array.from({ length: input.horizon }, (_, week) => factor * (20 + ((series * 7 + week * 3) % 90)) + 0.137);
-  const quantiles = (series: number) => ({
-    mean: along(1, series),
-    p2_5: along(0.5, series),
-    p10: along(0.7, series),
-    p50: along(0.98, series),
-    p90: along(1.4, series),
-    p97_5: along(1.9, series),
-  });
-  return {
-    fit: null,
-    series: input.series.map(({ item, location }, index) => ({
-      item,
-      location,
-      method: 'simple-average',
-      ...quantiles(index),
-      base: along(0.9, index),
-      marks: Array.from({ length: input.horizon }, () => []),
-      parts: {},
-    })),
-    totals: [{ scope: 'line', of: null, ...quantiles(0) }],
-    findings: [],
-  };
-}
-
-/** One line of `items` series with a stored plan of `weeks` weeks; returns its id and that of its category. */
-async function storePlan(
-  given: BenchDatabase,
-  items: number,
-  weeks: number,
-): Promise<{ lineId: number; categoryId: number }> {
-  const { database, actor } = given;
-  const categoryId = await storeCategory(given, inventCategory('Wide', 1, items));
-  const gathered = await inSnapshot(database, (tx) => gatherForecast(tx, categoryId, weeks));
-  const forecasts = gathered.lines.map(({ input }) => inventForecast(input));
-  await inTransaction(database, (tx) => saveForecast(tx, actor, gathered, forecasts, null));
-  return { lineId: gathered.lines[0]!.lineId, categoryId };
-}
+import { storePlan } from './stored-plan.ts';
 
 /** Serves the app on loopback for the length of `work`. */
 async function serve<T>(
@@ -107,7 +62,7 @@ export const readGrid: BenchRow = {
   name: 'read-grid',
   run: () =>
     withBenchDatabase(async (given) => {
-      const { lineId } = await storePlan(given, 600, 52);
+      const lineId = (await storePlan(given, { lines: 1, items: 600, weeks: 52 }))[0]!.lineId;
       const query =
         `select s.item_id, s.location_id, p.plan, s.model, s.base, s.p10, s.p90, s.price from plan_series p ` +
         `join run_series s on s.line_id = p.line_id and s.item_id = p.item_id and s.location_id = p.location_id where p.line_id = ${lineId}`;
@@ -181,7 +136,7 @@ export const firstPage: BenchRow = {
   run: () =>
     withBenchDatabase(async (given) => {
       await buildClientIfChanged();
-      const { lineId } = await storePlan(given, 12, 13);
+      const lineId = (await storePlan(given, { lines: 1, items: 12, weeks: 13 }))[0]!.lineId;
       return serve(given, async (address, token) => {
         const pages = [
           { work: 'sign-in page', path: '/', token: null, must: 250, goal: 150 },
