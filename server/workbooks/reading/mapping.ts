@@ -121,6 +121,12 @@ export function fingerprintHeader(names: readonly string[]): string {
   return createHash('sha256').update(JSON.stringify(simple)).digest('hex');
 }
 
+/** Percents: no value below zero, and most of those that say anything lie above 1. A single 3 among ones is a slip, no percent. */
+function isMostlyAboveOne(values: readonly number[]): boolean {
+  const telling = values.filter((value) => value !== 0);
+  return telling.every((value) => value > 0) && telling.filter((value) => value > 1).length * 2 > telling.length;
+}
+
 function listCandidates(name: string, facts: ContentFacts, isCanonical: boolean) {
   const canonical = isCanonical ? matchCanonicalName(name) : null;
   if (canonical) return [{ match: canonical, reason: 'canonical' as const }];
@@ -195,7 +201,7 @@ function describeContent(cells: readonly CellValue[]): ContentFacts {
     number: count(() => true),
     integer: count(Number.isInteger),
     fraction: count((value) => value >= 0 && value <= 1),
-    percent: !isAllRatio && largest > 1 && largest <= 100 && values.every((value) => value >= 0) ? 1 : 0,
+    percent: !isAllRatio && largest > 1 && largest <= 100 && isMostlyAboveOne(values) ? 1 : 0,
     negative: count((value) => value < 0),
     truth: share((cell) => typeof cell === 'string' && /^(y|yes|n|no|true|false|x|on|off|✓|✔)$/i.test(cell.trim())),
     code: share((cell) => typeof cell === 'string' && /^\S*\d\S*$/.test(cell.trim())),

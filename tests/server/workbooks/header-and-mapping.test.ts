@@ -49,6 +49,15 @@ describe('finding the header', () => {
 });
 
 describe('proposing what columns mean', () => {
+  it('takes a single 3 among ones for a slip, and mostly larger figures for percents', () => {
+    const scaleOf = (shares: number[]) => {
+      const rows = toRows(shares.map((share, index) => ['2026-W48', `A${index}`, 5, share] as CellValue[]));
+      return proposeMapping(['Week', 'Item no.', 'Units', 'Feature'], rows)[3]!.scale;
+    };
+    expect(scaleOf([1, 0, 1, 1, 3, 0, 1])).toBe('fraction');
+    expect(scaleOf([0, 20, 0, 100, 35])).toBe('percent');
+  });
+
   it('is certain of the canonical file', () => {
     const names =
       'week,category,line,item,location,units,net_value,price,regular_price,feature,display,promo_coupon,promo_multibuy,gap'.split(
