@@ -54,7 +54,7 @@ describe('proposing what columns mean', () => {
       const rows = toRows(shares.map((share, index) => ['2026-W48', `A${index}`, 5, share] as CellValue[]));
       return proposeMapping(['Week', 'Item no.', 'Units', 'Feature'], rows)[3]!.scale;
     };
-    expect(scaleOf([1, 0, 1, 1, 3, 0, 1])).toBe('fraction');
+    expect(scaleOf([1, 0, 1, 1, 3, 0, 1, 1, 0, 0, 1, 1])).toBe('fraction');
     expect(scaleOf([0, 20, 0, 100, 35])).toBe('percent');
   });
 
