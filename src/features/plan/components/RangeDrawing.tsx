@@ -33,9 +33,10 @@ export function RangeDrawing({ low95, low80, high80, high95, model, plan, lastYe
     model: figure(model),
     plan: figure(plan),
   });
-  const anchor = (value: number, before: boolean) => {
-    if (x(value) < 44) return 'start';
-    if (x(value) > width - 44) return 'end';
+  /** `room` = the width that the words may take. */
+  const anchor = (value: number, before: boolean, room = 44) => {
+    if (x(value) < room) return 'start';
+    if (x(value) > width - room) return 'end';
     return before ? 'end' : 'start';
   };
   return (
@@ -71,7 +72,7 @@ export function RangeDrawing({ low95, low80, high80, high95, model, plan, lastYe
       {lastYear !== null && (
         <>
           <circle cx={x(lastYear)} cy="27" r="3.5" fill="var(--ink)" stroke="var(--sheet)" />
-          <text x={x(lastYear)} y="47" fontSize="11" fill="var(--soft)" textAnchor={anchor(lastYear, false)}>
+          <text x={x(lastYear)} y="47" fontSize="11" fill="var(--soft)" textAnchor={anchor(lastYear, false, 96)}>
             {t('why.lastYearShort', { units: figure(lastYear) })}
           </text>
         </>
