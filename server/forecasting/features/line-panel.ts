@@ -25,6 +25,8 @@ export interface PanelSeries {
   display: Float64Array;
   mechanics: Float64Array[];
   isPromoted: Uint8Array;
+  /** Weight of the week's row, 1 unless it lies far from what its neighbours in time let expect (outlier-weights.ts). */
+  trust: Float64Array;
   usedWeeks: number;
   largestUnits: number;
 }
@@ -85,6 +87,7 @@ export function buildLinePanel(input: LineInput): LinePanel {
       display: new Float64Array(length),
       mechanics: mechanicNames.map(() => new Float64Array(length)),
       isPromoted: new Uint8Array(length),
+      trust: new Float64Array(length).fill(1),
       usedWeeks: 0,
       largestUnits: 0,
     };

@@ -11,6 +11,8 @@ export function buildLogTarget(panel: LinePanel, halfLifeWeeks: number): FitTarg
     target: panel.series.map((series) =>
       series.units.map((units, t) => (units > 0 ? Math.log(units) - series.offset[t]! : 0)),
     ),
-    rowWeights: panel.series.map((series) => fade.map((weight, t) => (series.units[t]! > 0 ? weight : 0))),
+    rowWeights: panel.series.map((series) =>
+      fade.map((weight, t) => (series.units[t]! > 0 ? weight * series.trust[t]! : 0)),
+    ),
   };
 }

@@ -3,7 +3,8 @@ import type { LinePanel } from '../features/line-panel.ts';
 import { markUnseen } from '../features/unseen-marks.ts';
 import { reportFit } from '../fit/fit-report.ts';
 import { keepFit } from '../fit/kept-fit.ts';
-import type { LineModel } from '../fit/line-model.ts';
+import { buildColumnSet, fitLineModel, type LineModel } from '../fit/line-model.ts';
+import { weighOutliers } from '../fit/outlier-weights.ts';
 import { computeRecentLevels, type CarryRule } from '../fit/recent-level.ts';
 import { computeWeekInfluences } from '../ranges/coefficient-draws.ts';
 import {
@@ -31,6 +32,8 @@ import { tellAgainstBase } from './predicted-parts.ts';
 import { computeSmearing, type RolledCell } from './smearing.ts';
 
 const TIMES_LARGEST_SEEN = 3;
+/** Outliers whose rows keep no more than this weight are named to people. */
+const NAMED_BELOW = 0.5;
 
 /** What a caller may fix instead of having it chosen out of sample. */
 export interface SearchChoice {
@@ -54,13 +57,14 @@ export interface SeriesCentre {
 
 /** Fits the line, chooses its specification, and fills centres and paths of the series that bring rows to the fit. */
 export function forecastByRegression(
-  panel: LinePanel,
+  unweighted: LinePanel,
   input: LineInput,
   choice: SearchChoice,
   centres: SeriesCentre[],
   paths: UnitPaths,
   findings: Finding[],
 ): LineFit {
+  const panel = trustOrdinaryWeeks(unweighted, input, findings);
   const lastWeek = panel.pastWeeks - 1;
   const frame = buildRollingFrame(panel);
   const chosen = choose(panel, input, frame, choice);
@@ -158,6 +162,24 @@ const thinSpecification: Specification = {
   halfLifeWeeks: Infinity,
   spread: 0.5,
 };
+
+/** Weighs rows by Huber's function on the residuals of a plain fit and names those that lost most of their weight. */
+function trustOrdinaryWeeks(panel: LinePanel, input: LineInput, findings: Finding[]): LinePanel {
+  if (panel.hasZeros) return panel;
+  const specification = { ...thinSpecification, advertisedPrice: true };
+  const columnSet = buildColumnSet(panel, input.holidays, specification);
+  const weights = weighOutliers(panel, fitLineModel(panel, columnSet, specification, panel.pastWeeks - 1));
+  const series = panel.series.map((one, s) => {
+    const { item, location } = one.input;
+    weights[s]!.forEach((weight, t) => {
+      if (weight > NAMED_BELOW) return;
+      const values = { week: panel.weeks[t]!, units: one.units[t]! };
+      findings.push({ kind: 'outlier-week-weighed-less', item, location, values });
+    });
+    return { ...one, trust: weights[s]! };
+  });
+  return { ...panel, series };
+}
 
 function markCells(unseen: readonly string[][], mean: Float64Array, largestUnits: number): string[][] {
   return unseen.map((cell, h) =>

@@ -48,12 +48,14 @@ export const startingCarry: CarryRule = { halfLifeWeeks: 6, priorWeeks: 8, decay
 interface Step {
   change: Partial<Specification>;
   isEarned: boolean;
+  /** 1.5 unless the change is known to look better than it is. */
+  standardErrors?: number;
 }
 
 /**
  * Chooses among specifications on rolling origins inside the training weeks by CRPS in units, walking from a plain one through
  * groups of changes and keeping what is better. Season, trend, dips and holidays must be better by more than 1.5 standard errors of
- * their gain over the origins: on one to two and a half years they mostly look better than they are.
+ * their gain over the origins, trend by more than 2: on one to two and a half years they mostly look better than they are.
  */
 export function chooseSpecification(
   panel: LinePanel,
@@ -74,10 +76,10 @@ export function chooseSpecification(
   let best = evaluate(startingSpecification);
   for (const group of listSteps(panel, holidays, frame)) {
     let bestOfGroup = best;
-    for (const { change, isEarned } of group) {
+    for (const { change, isEarned, standardErrors } of group) {
       const challenger = evaluate({ ...best.candidate.specification, ...change });
       const isBetter = isEarned
-        ? hasEarned(challenger.score, best.score)
+        ? hasEarned(challenger.score, best.score, standardErrors)
         : challenger.score.crps < bestOfGroup.score.crps;
       if (isBetter && challenger.score.crps < bestOfGroup.score.crps) bestOfGroup = challenger;
     }
@@ -123,7 +125,7 @@ function listSteps(panel: LinePanel, holidays: readonly HolidayWeek[], frame: Ro
     const pairs = panel.pastWeeks >= 2 * WEEKS_IN_YEAR ? [1, 2, 3, 4] : [1, 2, 3];
     groups.push(pairs.map((fourierPairs) => earned({ fourierPairs })));
   }
-  if (earliest >= 40) groups.push([earned({ trend: true })]);
+  if (earliest >= 40) groups.push([{ change: { trend: true }, isEarned: true, standardErrors: 2 }]);
   return groups;
 }
 
@@ -135,11 +137,15 @@ function hasRegularPriceMoved(panel: LinePanel): boolean {
 }
 
 /** Whether the gain in CRPS is larger than its standard error over the origins allows for chance. */
-export function hasEarned(challenger: CandidateScore, best: CandidateScore): boolean {
+export function hasEarned(
+  challenger: CandidateScore,
+  best: CandidateScore,
+  standardErrors = STANDARD_ERRORS_TO_EARN,
+): boolean {
   const gains = best.byOrigin.map((value, o) => value - challenger.byOrigin[o]!);
   const mean = gains.reduce((sum, gain) => sum + gain, 0) / gains.length;
   const variance = gains.reduce((sum, gain) => sum + (gain - mean) ** 2, 0) / Math.max(1, gains.length - 1);
-  return mean > STANDARD_ERRORS_TO_EARN * Math.sqrt(variance / gains.length);
+  return mean > standardErrors * Math.sqrt(variance / gains.length);
 }
 
 /** Whether a specification brings in nothing that had to be earned and that the best one lacks. */

@@ -56,7 +56,7 @@ export function rollCandidate(
   return { specification, name: nameSpecification(specification), columnSet, model, linear, residuals };
 }
 
-/** Residuals by series and week up to `lastWeek`; under Poisson ln of the bounded ratio units ÷ mean. */
+/** Residuals by series and week up to `lastWeek`, those of outliers drawn in to the bound; under Poisson ln of the bounded ratio units ÷ mean. */
 export function residualsOf(panel: LinePanel, model: LineModel, lastWeek: number): Float64Array[] {
   return panel.series.map((series, s) => {
     const residuals = new Float64Array(panel.pastWeeks).fill(Number.NaN);
@@ -67,7 +67,7 @@ export function residualsOf(panel: LinePanel, model: LineModel, lastWeek: number
       const linear = level + linearPart(model.columns, slopes, s, t) + series.offset[t]!;
       residuals[t] = panel.hasZeros
         ? Math.log(Math.max(series.units[t]! / Math.exp(linear), 0.05))
-        : Math.log(series.units[t]!) - linear;
+        : series.trust[t]! * (Math.log(series.units[t]!) - linear);
     }
     return residuals;
   });
