@@ -108,16 +108,21 @@ function listAll(columns: number): number[] {
   return Array.from({ length: columns }, (_, j) => j);
 }
 
-/** Writes y − X·b to `residuals`, four rows at a time. columns: those of the design that `coefficients` belong to. */
+/** Rows whose residuals and gaps are taken together, while they are in the processor's cache; a multiple of 4. */
+const blockRows = 256;
+
+/** Writes y − X·b of rows `from` … `to` to `residuals`, four rows at a time. columns: those of the design that `coefficients` belong to. */
 function computeResiduals(
-  { design, rows, columns: width, response }: LeastSquaresInput,
+  { design, columns: width, response }: LeastSquaresInput,
   columns: Int32Array,
   coefficients: Float64Array,
   residuals: Float64Array,
+  from: number,
+  to: number,
 ): void {
   const size = columns.length;
-  let i = 0;
-  for (; i + 4 <= rows; i += 4) {
+  let i = from;
+  for (; i + 4 <= to; i += 4) {
     const start = i * width;
     let a = 0;
     let b = 0;
@@ -136,38 +141,39 @@ function computeResiduals(
     residuals[i + 2] = response[i + 2]! - c;
     residuals[i + 3] = response[i + 3]! - d;
   }
-  for (; i < rows; i++) {
+  for (; i < to; i++) {
     let sum = 0;
     for (let k = 0; k < size; k++) sum += design[i * width + columns[k]!]! * coefficients[k]!;
     residuals[i] = response[i]! - sum;
   }
 }
 
-/** XᵀW·e, four rows at a time. */
-function computeGaps(
-  { design, rows, columns: width, weights }: LeastSquaresInput,
+/** Adds XᵀW·e of rows `from` … `to` to `gaps`, four rows at a time. */
+function addGaps(
+  { design, columns: width, weights }: LeastSquaresInput,
   columns: Int32Array,
   residuals: Float64Array,
-): Float64Array {
-  const pulls = weights ? residuals.map((residual, i) => residual * weights[i]!) : residuals;
+  gaps: Float64Array,
+  from: number,
+  to: number,
+): void {
   const size = columns.length;
-  const gaps = new Float64Array(size);
-  let i = 0;
-  for (; i + 4 <= rows; i += 4) {
+  const pull = (i: number) => (weights ? residuals[i]! * weights[i]! : residuals[i]!);
+  let i = from;
+  for (; i + 4 <= to; i += 4) {
     const start = i * width;
-    const a = pulls[i]!;
-    const b = pulls[i + 1]!;
-    const c = pulls[i + 2]!;
-    const d = pulls[i + 3]!;
+    const a = pull(i);
+    const b = pull(i + 1);
+    const c = pull(i + 2);
+    const d = pull(i + 3);
     for (let k = 0; k < size; k++) {
       const at = start + columns[k]!;
       gaps[k]! += design[at]! * a + design[at + width]! * b + design[at + 2 * width]! * c + design[at + 3 * width]! * d;
     }
   }
-  for (; i < rows; i++) {
-    for (let k = 0; k < size; k++) gaps[k]! += design[i * width + columns[k]!]! * pulls[i]!;
+  for (; i < to; i++) {
+    for (let k = 0; k < size; k++) gaps[k]! += design[i * width + columns[k]!]! * pull(i);
   }
-  return gaps;
 }
 
 /** Leverages: squared lengths of the rows of √w·X·U⁻¹, whose columns are orthonormal. */
@@ -256,8 +262,12 @@ export function fitSpecification(equations: NormalEquations, specification: Spec
   const estimate = new Float64Array(size);
   for (let k = 0; k < size; k++) estimate[k] = solution[k]! / scales[columns[k]!]!;
   const residuals = new Float64Array(rows);
-  computeResiduals(input, listed, estimate, residuals);
-  const gaps = computeGaps(input, listed, residuals);
+  const gaps = new Float64Array(size);
+  for (let from = 0; from < rows; from += blockRows) {
+    const to = Math.min(rows, from + blockRows);
+    computeResiduals(input, listed, estimate, residuals, from, to);
+    addGaps(input, listed, residuals, gaps, from, to);
+  }
   for (let k = 0; k < size; k++) {
     const j = columns[k]!;
     gaps[k] = (gaps[k]! - (penalties?.[j] ?? 0) * estimate[k]!) / scales[j]!;
@@ -272,7 +282,7 @@ export function fitSpecification(equations: NormalEquations, specification: Spec
     coefficients[columns[k]!] = estimate[k]!;
     for (let r = 0; r <= k; r++) factorR[r * size + k] = upper[r * size + k]! * scale;
   }
-  computeResiduals(input, listed, estimate, residuals);
+  computeResiduals(input, listed, estimate, residuals, 0, rows);
   const fitted = new Float64Array(rows);
   let residualSumOfSquares = 0;
   for (let i = 0; i < rows; i++) {
