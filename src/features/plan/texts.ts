@@ -38,6 +38,7 @@ export const planTexts = {
     label: 'Key',
     model: 'model',
     override: 'override',
+    pending: 'not saved yet',
     through: 'moved through another row',
     look: 'due another look',
     decision: 'needs a decision',

@@ -73,7 +73,7 @@ export function listWhyRows(
   for (const { name, units, factor } of why.base.parts) addPart(name, 'base', units, { part: name, factor });
   addSum('base', 'subtotal', 0, why.base.units);
   for (const { name, units, factor } of why.uplift.parts) addPart(name, 'uplift', units, { part: name, factor });
-  if (rows.at(-1)!.group === 'uplift') {
+  if (rows.at(-1).group === 'uplift') {
     addSum('uplift', 'subtotal', why.base.units, why.base.units + why.uplift.units, why.uplift.factor);
   }
   addPart('rounding', 'rounding', why.rounding);

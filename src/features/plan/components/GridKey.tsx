@@ -2,7 +2,7 @@ import { useTranslation } from 'react-i18next';
 import { FootMark, ForkMark, LozengeMark, PennantMark, RingMark } from '../../../components/marks.tsx';
 
 /** What each mark means. */
-export function GridKey({ note }: { note: string | null }) {
+export function GridKey({ note, hasPending = false }: { note: string | null; hasPending?: boolean }) {
   const { t } = useTranslation('plan');
   return (
     <div className="flex min-h-[34px] flex-wrap items-center gap-x-4 gap-y-0.5 text-tiny text-soft">
@@ -16,6 +16,14 @@ export function GridKey({ note }: { note: string | null }) {
         <li className="inline-flex items-center gap-1.5">
           <span className="over-through text-small">1,240</span> {t('key.through')}
         </li>
+        {hasPending && (
+          <li className="inline-flex items-center gap-1.5">
+            <svg width="7" height="7" viewBox="0 0 7 7" aria-hidden="true">
+              <path d="M0 0H7L0 7Z" fill="var(--plum)" />
+            </svg>
+            {t('key.pending')}
+          </li>
+        )}
         <li className="inline-flex items-center gap-1.5">
           <RingMark /> {t('key.look')}
         </li>

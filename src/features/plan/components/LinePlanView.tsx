@@ -778,6 +778,7 @@ export function LinePlanView({
                 </p>
               ) : (
                 <GridKey
+                  hasPending={hasEdits}
                   note={
                     hasEdits && edits.baseVersion !== null && edits.baseVersion < shownNumber
                       ? t('edits.othersSaved', { author: plan.version?.author, number: shownNumber })
