@@ -1,6 +1,7 @@
 import { randomUUID } from 'node:crypto';
 import { existsSync } from 'node:fs';
 import path from 'node:path';
+import compression from 'compression';
 import express, { Router, type Express } from 'express';
 import helmet from 'helmet';
 import { pinoHttp } from 'pino-http';
@@ -50,6 +51,8 @@ export function buildApp(deps: Deps): Express {
       strictTransportSecurity: deps.env.publicUrl?.startsWith('https:') ?? false,
     }),
   );
+
+  app.use(compression());
 
   app.get('/health/live', (_request, response) => {
     response.json({ status: 'live' });
