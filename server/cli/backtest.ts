@@ -1,5 +1,6 @@
 import { readFileSync, writeFileSync } from 'node:fs';
 import { parseArgs } from 'node:util';
+import { weekdayOf } from '../../shared/domain/weeks.ts';
 import { chooseOrigins, groupByLine, runBacktest, type BacktestCell } from '../forecasting/backtest.ts';
 import { summariseAccuracy, type AccuracySummary } from '../forecasting/backtest-summary.ts';
 import { CanonicalFileError, readCanonicalCalendar, readCanonicalSales } from '../forecasting/canonical-sales.ts';
@@ -24,8 +25,9 @@ function main(): number {
     console.error(USAGE);
     return 2;
   }
-  const rows = readCanonicalSales(readFileSync(values.sales, 'utf8'));
-  const calendar = values.calendar ? readCanonicalCalendar(readFileSync(values.calendar, 'utf8')) : [];
+  const rows = readCanonicalSales(readText(values.sales));
+  const firstWeekday = weekdayOf(rows[0]?.sold.weekStart ?? '1970-01-05');
+  const calendar = values.calendar ? readCanonicalCalendar(readText(values.calendar), firstWeekday) : [];
   const origins = chooseOrigins(rows, values.origins, horizon);
   const result = runBacktest(
     groupByLine(rows),
@@ -48,6 +50,14 @@ function main(): number {
   });
   console.log(`seconds per line and origin: ${result.secondsPerLine.toFixed(2)}`);
   return 0;
+}
+
+function readText(path: string): string {
+  try {
+    return readFileSync(path, 'utf8');
+  } catch (error) {
+    throw new CanonicalFileError(`${path} can't be read`, { cause: error });
+  }
 }
 
 function rounded(summary: AccuracySummary): Record<string, number> {

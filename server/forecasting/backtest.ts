@@ -1,5 +1,10 @@
-import { weeksBetween } from '../../shared/domain/weeks.ts';
-import type { CanonicalCalendarRow, CanonicalSalesRow } from './canonical-sales.ts';
+import { weekdayOf, weeksBetween } from '../../shared/domain/weeks.ts';
+import {
+  CanonicalFileError,
+  parseTradingWeek,
+  type CanonicalCalendarRow,
+  type CanonicalSalesRow,
+} from './canonical-sales.ts';
 import { forecastBenchmarks, type BenchmarkForecasts } from './forecast-naive.ts';
 import { forecastLine } from './forecast-line.ts';
 import type { LineForecast, LineInput, PlannedWeek, SeriesInput, SoldWeek } from './types.ts';
@@ -92,10 +97,23 @@ function overlayPlan(base: PlannedWeek, over: PlannedWeek): PlannedWeek {
   };
 }
 
-/** The last `count` origins that leave a whole horizon after them, four weeks apart; or the ones named. */
+/**
+ * The last `count` origins that leave a whole horizon after them, four weeks apart; or the ones named, each an ISO week or a date.
+ * Throws CanonicalFileError for a name that is no week, or one before or after all sales.
+ */
 export function chooseOrigins(rows: readonly CanonicalSalesRow[], origins: string, horizon: number): string[] {
-  if (!/^\d+$/.test(origins)) return origins.split(',').map((origin) => origin.trim());
   const weeks = [...new Set(rows.map((row) => row.sold.weekStart))].sort();
+  if (weeks.length === 0) throw new CanonicalFileError('the sales file has no rows');
+  if (!/^\d+$/.test(origins)) {
+    return origins.split(',').map((name) => {
+      const origin = parseTradingWeek(name.trim(), weekdayOf(weeks[0]!));
+      if (origin === null) throw new CanonicalFileError(`origin "${name.trim()}" is neither an ISO week nor a date`);
+      if (origin < weeks[0]! || origin > weeks.at(-1)) {
+        throw new CanonicalFileError(`origin ${origin} lies outside the sales, ${weeks[0]!} to ${weeks.at(-1)}`);
+      }
+      return origin;
+    });
+  }
   const last = weeks.length - 1 - horizon;
   const chosen: string[] = [];
   for (let at = last; at >= 0 && chosen.length < Number(origins); at -= 4) chosen.push(weeks[at]!);

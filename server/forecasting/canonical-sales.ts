@@ -56,9 +56,9 @@ export function readCanonicalSales(text: string): CanonicalSalesRow[] {
   });
 }
 
-/** Reads a calendar: `week,line,item,location,price,regular_price,depth,feature,display,promo_…`. Throws CanonicalFileError. */
-export function readCanonicalCalendar(text: string): CanonicalCalendarRow[] {
-  const { rows, mechanics, firstWeekday } = parseRows(text, ['week', 'item']);
+/** Reads a calendar: `week,line,item,location,price,regular_price,depth,feature,display,promo_…`, its weeks on the sales' first weekday. Throws CanonicalFileError. */
+export function readCanonicalCalendar(text: string, firstWeekday: Weekday): CanonicalCalendarRow[] {
+  const { rows, mechanics } = parseRows(text, ['week', 'item']);
   return rows.map((row, index) => {
     const at = index + 2;
     return {
@@ -97,10 +97,14 @@ function parseRows(
   return { rows: parsed.data, mechanics, firstWeekday: dated ? weekdayOf(dated['week']!.trim()) : 1 };
 }
 
+/** First day of the trading week that an ISO week or a date names; null where the text is neither. */
+export function parseTradingWeek(text: string, firstWeekday: Weekday): string | null {
+  return isIsoDate(text) ? startOfTradingWeek(text, firstWeekday) : parseWeekLabel(text, firstWeekday);
+}
+
 function readWeek(value: string | undefined, at: number, firstWeekday: Weekday): string {
   const text = value?.trim() ?? '';
-  if (isIsoDate(text)) return startOfTradingWeek(text, firstWeekday);
-  const week = parseWeekLabel(text, firstWeekday);
+  const week = parseTradingWeek(text, firstWeekday);
   if (week === null) throw new CanonicalFileError(`row ${at}: "${text}" is neither an ISO week nor a date`);
   return week;
 }

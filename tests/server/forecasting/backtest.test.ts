@@ -2,7 +2,11 @@ import { readFileSync } from 'node:fs';
 import { describe, expect, it } from 'vitest';
 import { chooseOrigins, groupByLine, hideAfterOrigin, runBacktest } from '../../../server/forecasting/backtest.ts';
 import { summariseAccuracy } from '../../../server/forecasting/backtest-summary.ts';
-import { CanonicalFileError, readCanonicalSales } from '../../../server/forecasting/canonical-sales.ts';
+import {
+  CanonicalFileError,
+  readCanonicalCalendar,
+  readCanonicalSales,
+} from '../../../server/forecasting/canonical-sales.ts';
 import { forecastLine } from '../../../server/forecasting/forecast-line.ts';
 import { createRandom } from '../../../server/forecasting/ranges/random.ts';
 
@@ -68,6 +72,28 @@ describe('back-test', () => {
     const weeks = [...new Set(chainRows.map((row) => row.sold.weekStart))].sort();
     expect(weeks.at(-9)).toBe(second);
     expect(weeks.at(-13)).toBe(first);
+  });
+});
+
+describe('named origins', () => {
+  it('may be ISO weeks or any date of the week', () => {
+    // 1992-04-09 is a Thursday; the fourth day of its week, Sunday 12 April, lies in ISO week 15.
+    expect(chooseOrigins(chainRows, '1992-W15, 1992-04-11', 8)).toEqual([ORIGIN, ORIGIN]);
+  });
+
+  it('are refused outside the sales or if they are no week', () => {
+    expect(() => chooseOrigins(chainRows, '2001-W10', 8)).toThrow('outside the sales');
+    expect(() => chooseOrigins(chainRows, 'spring', 8)).toThrow(CanonicalFileError);
+  });
+});
+
+describe('canonical calendar', () => {
+  it('lays its ISO weeks on the sales’ first weekday and its depth over the plan', () => {
+    const calendar = readCanonicalCalendar('week,line,item,location,depth,feature\n1992-W16,OJ,B01,All,0.25,1\n', 4);
+    expect(calendar[0]!.planned).toMatchObject({ weekStart: '1992-04-16', depth: 0.25, feature: 1 });
+    const input = hideAfterOrigin(groupByLine(chainRows)[0]!, calendar, ORIGIN, 8);
+    const week = input.series.find((one) => one.item === 'B01')!.planned.find((one) => one.weekStart === '1992-04-16')!;
+    expect(week).toMatchObject({ depth: 0.25, feature: 1 });
   });
 });
 
