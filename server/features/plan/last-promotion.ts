@@ -42,7 +42,7 @@ export function findLastSimilarPromotion(weeks: readonly ItemWeek[], terms: Plan
       .map(({ units }) => units);
     return {
       firstWeek: run[0]!.weekStart,
-      lastWeek: run.at(-1)!.weekStart,
+      lastWeek: run.at(-1).weekStart,
       weeks: run.length,
       depth,
       isFeatured,

@@ -142,7 +142,7 @@ export function replayBySteps(
   let replayed = replayFirst(0);
   const steps = groups.map((group) => {
     const before = replayed;
-    replayed = replayFirst(group.at(-1)! + 1);
+    replayed = replayFirst(group.at(-1) + 1);
     return { overrideIds: group.map((index) => inOrder[index]!.id), units: cleanUnits(replayed - before) };
   });
   return { steps, replayed };

@@ -101,7 +101,7 @@ describe('a save', () => {
     expect(cleared.changed).toHaveLength(1);
     expect(cleared.changed[0]!.plan.slice(4, 6)).toEqual([model[4], 9]);
     const { rows } = await world.deps.database.pool.query(`select clears from override order by id desc limit 1`);
-    expect(rows[0].clears).toEqual([set.overrides.at(-1)!.id]);
+    expect(rows[0].clears).toEqual([set.overrides.at(-1).id]);
   });
 });
 

@@ -128,7 +128,7 @@ describe('Longley against R', () => {
       ),
     ).toBeGreaterThan(10);
     const scaled = expected.condition_number['columns_scaled_to_unit_length_incl_intercept']!;
-    expect(countCorrectDigits(analyseCondition(fit).indices.at(-1)!, scaled)).toBeGreaterThan(10);
+    expect(countCorrectDigits(analyseCondition(fit).indices.at(-1), scaled)).toBeGreaterThan(10);
     expect(countCorrectDigits(computeConditionNumber(fit), expected.condition_number['raw_X']!)).toBeGreaterThan(7);
   });
 
@@ -143,7 +143,7 @@ describe('Longley against R', () => {
     analysis.proportions.forEach((row, k) => {
       row.forEach((share, j) => expect(share).toBeCloseTo(r.proportions[k]![j]!, 9));
     });
-    expect(findInseparableColumns(fit).at(-1)).toEqual(fit.kept.filter((_, j) => r.proportions.at(-1)![j]! > 0.5));
+    expect(findInseparableColumns(fit).at(-1)).toEqual(fit.kept.filter((_, j) => r.proportions.at(-1)[j]! > 0.5));
   });
 
   it('gives the same residuals, leverages and influence of every row', () => {
