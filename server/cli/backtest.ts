@@ -2,6 +2,7 @@ import { readFileSync, writeFileSync } from 'node:fs';
 import { parseArgs } from 'node:util';
 import { weekdayOf } from '../../shared/domain/weeks.ts';
 import { chooseOrigins, groupByLine, runBacktest, type BacktestCell } from '../forecasting/backtest.ts';
+import { breakDownAccuracy, type AccuracyRow } from '../forecasting/backtest-breakdown.ts';
 import { summariseAccuracy, type AccuracySummary } from '../forecasting/backtest-summary.ts';
 import { CanonicalFileError, readCanonicalCalendar, readCanonicalSales } from '../forecasting/canonical-sales.ts';
 
@@ -48,6 +49,7 @@ function main(): number {
     series: rounded(summariseAccuracy(result.cells)),
     ...(result.totals.length > 0 ? { 'line total': rounded(summariseAccuracy(result.totals)) } : {}),
   });
+  console.table(breakDownAccuracy(result.cells).map((row) => rounded(row)));
   console.log(`seconds per line and origin: ${result.secondsPerLine.toFixed(2)}`);
   return 0;
 }
@@ -60,8 +62,14 @@ function readText(path: string): string {
   }
 }
 
-function rounded(summary: AccuracySummary): Record<string, number> {
-  return Object.fromEntries(Object.entries(summary).map(([key, value]) => [key, Number(Number(value).toFixed(4))]));
+/** Figures to four decimals, words as they are. */
+function rounded(scores: AccuracySummary | AccuracyRow): Record<string, number | string> {
+  return Object.fromEntries(
+    Object.entries<number | string>({ ...scores }).map(([key, value]) => [
+      key,
+      typeof value === 'number' ? Number(value.toFixed(4)) : value,
+    ]),
+  );
 }
 
 function writeCell(cell: BacktestCell): string {

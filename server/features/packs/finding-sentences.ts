@@ -13,6 +13,8 @@ const sentences: Readonly<Record<string, string>> = {
   'column-aliased': '{column} always goes together with something else: its own effect can’t be told',
   'wrong-sign-line': '{column} came out with a sign that can’t be: its effect is taken as none',
   'wrong-sign-own': '{column} came out with a sign that can’t be: the line’s effect is taken instead',
+  'ranges-not-scaled': 'too little history to check the ranges by back-test: they are as simulated',
+  'outlier-week-weighed-less': 'weeks far from everything else weigh less in the fit',
 };
 
 /** What a fit had to tell, one sentence per kind and column, with the number of places it concerns. */

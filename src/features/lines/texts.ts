@@ -125,6 +125,8 @@ export const linesTexts = {
       'column-aliased': '“{{column}}” always goes together with something else and is dropped',
       'wrong-sign-line': '“{{column}}” came out with a sign that can’t be; its effect is taken as none',
       'wrong-sign-own': '“{{column}}” came out with a sign that can’t be; the line’s effect is taken instead',
+      'ranges-not-scaled': 'Too little history to check the ranges by back-test: they are as simulated, not scaled',
+      'outlier-week-weighed-less': 'Weeks far from everything else weigh less in the fit',
       other: '{{kind}}',
     },
     times: '{{count}} times',

@@ -424,6 +424,10 @@ export const planTexts = {
     'regular-price-inferred': 'regular price inferred in {{weeks}} weeks.',
     'column-never-happened': '{{column}} never happened in the history: its effect can’t be known.',
     'column-never-moved': '{{column}} never changed in the history: its effect can’t be known.',
+    'ranges-not-scaled': 'too little history to check the ranges by back-test: they are as simulated.',
+    'outlier-week-weighed-less': 'week of {{week}} lies far from everything else and weighs less.',
+    'wrong-sign-line': '{{column}} came out with a sign that can’t be; its effect is taken as none.',
+    'wrong-sign-own': '{{column}} came out with a sign that can’t be; the line’s effect is taken instead.',
     'column-aliased': '{{column}} always moved together with something else: its own effect can’t be told.',
   },
 };
