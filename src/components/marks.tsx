@@ -89,6 +89,15 @@ export function ForkMark({ label }: MarkProps) {
   );
 }
 
+/** The model reaches beyond what was ever seen: an arrow that leaves its wall. */
+export function BeyondMark({ label }: MarkProps) {
+  return (
+    <Mark label={label} width={9} height={9} viewBox="0 0 9 9">
+      <path d="M1 .5V8.5M2.8 4.5H8M5.8 2.3L8 4.5L5.8 6.7" fill="none" stroke="var(--madder)" strokeWidth="1.2" />
+    </Mark>
+  );
+}
+
 /** Locked weeks. */
 export function FootMark({ label }: MarkProps) {
   return (

@@ -124,6 +124,8 @@ export interface CellMarks {
   isDueAnotherLook: boolean;
   needsDecision: boolean;
   isOutsideRange: boolean;
+  /** The model reaches beyond the prices, promotions or units ever seen in a series of the row. */
+  isBeyondSeen: boolean;
   isPending: boolean;
 }
 
@@ -192,11 +194,20 @@ export function computeRow(plan: LinePlan, figures: LineFigures, row: GridRow, h
       needsDecision: saved.some((override) => override.needsDecision !== null),
       isOutsideRange:
         range !== null && (value < (range.p2_5[week] ?? -Infinity) || value > (range.p97_5[week] ?? Infinity)),
+      isBeyondSeen: row.kind !== 'total' && listBeyondSeen(plan, row, week).length > 0,
       isPending: pending?.has(week) ?? false,
     });
   }
   return result;
 }
+
+/** Ways in which the model reaches beyond what was ever seen, of all series of the row in a planned week. */
+export function listBeyondSeen(plan: LinePlan, row: GridRow, week: number): string[] {
+  const kinds = row.seriesIndexes.flatMap((index) => plan.series[index]?.marks[String(week)] ?? []);
+  return [...new Set(kinds)].filter((kind) => beyondSeenKinds.has(kind));
+}
+
+const beyondSeenKinds = new Set(['outside-seen-price', 'outside-seen-promotion', 'above-three-times-largest']);
 
 /** Sum of a row in another version by weekStart; weeks that the version doesn't hold are missing. */
 export function rowOfVersion(state: VersionState, plan: LinePlan, row: GridRow): Map<string, number> {

@@ -30,6 +30,7 @@ export const planTexts = {
     look: 'due another look',
     decision: 'needs a decision',
     outside: 'outside the 95 % range',
+    beyond: 'beyond what was seen',
     pending: 'not saved yet',
     locked: 'locked',
     gap: 'gap on the shelf',
@@ -47,6 +48,7 @@ export const planTexts = {
     promotion: 'promotion',
     gap: 'gap',
     outside: 'outside the 95 % range',
+    beyond: 'beyond what was seen',
   },
   tools: {
     down: 'Down',
@@ -294,6 +296,11 @@ export const planTexts = {
     unsaved_one: '{{count}} change isn’t saved yet.',
     unsaved_other: '{{count}} changes aren’t saved yet.',
     outside: 'Outside the model’s 95 % range.',
+    beyond: {
+      'outside-seen-price': 'The planned price lies outside the prices ever seen; its effect is held at their edge.',
+      'outside-seen-promotion': 'Such a promotion was never seen here; its effect is held at the edge of what was.',
+      'above-three-times-largest': 'More than three times the most ever sold in a week: look twice.',
+    },
     netValue: 'Net value at the expected price: {{value}}.',
     averageOne: 'Too little history for a fit: this is a simple average.',
     average_one: '{{count}} of {{of}} series has too little history for a fit: a simple average stands in.',

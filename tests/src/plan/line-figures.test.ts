@@ -187,6 +187,17 @@ describe('computeFigures', () => {
     expect(shown[2]?.marks.map(({ isOutsideRange }) => isOutsideRange)).toEqual([false, false]);
   });
 
+  it('marks a number for which the model reaches beyond what was seen, but not the total', () => {
+    const reaching = [
+      series(1, 1, [20, 20], { marks: { 1: ['outside-seen-price', 'outside-listing'] } }),
+      series(2, 1, [10, 10]),
+    ];
+    const { shown } = rowsOf(plan({ series: reaching }));
+    expect(shown[0]?.marks.map(({ isBeyondSeen }) => isBeyondSeen)).toEqual([false, true]);
+    expect(shown[1]?.marks.map(({ isBeyondSeen }) => isBeyondSeen)).toEqual([false, false]);
+    expect(shown[2]?.marks.map(({ isBeyondSeen }) => isBeyondSeen)).toEqual([false, false]);
+  });
+
   it('takes an item of one location and its only series for the same', () => {
     const one = plan({ locations: [{ id: 1, name: 'All' }], series: [series(1, 1, [20, 20]), series(2, 1, [10, 10])] });
     const { shown } = rowsOf(one, [{ ...typed, scope: { itemId: 1, locationId: 1 } }]);

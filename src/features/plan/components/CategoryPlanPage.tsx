@@ -41,6 +41,7 @@ const plainMarks: CellMarks = {
   isDueAnotherLook: false,
   needsDecision: false,
   isOutsideRange: false,
+  isBeyondSeen: false,
   isPending: false,
 };
 const changedMarks: CellMarks = { ...plainMarks, overridden: 'through' };

@@ -4,7 +4,7 @@ import type { Finding } from '../../../../shared/contracts/lines.ts';
 import { isIsoDate, weekLabel } from '../../../../shared/domain/weeks.ts';
 
 /** Findings that change how far a number can be trusted stand first; the rest is detail of the data. */
-const weighty = new Set(['simple-average', 'too-little-history', 'outside-seen-prices', 'outside-seen-promotions']);
+const weighty = new Set(['line-too-thin', 'series-too-thin', 'series-intermittent', 'ranges-not-scaled']);
 
 function describeFinding(t: TFunction<'plan'>, finding: Finding, itemNames: ReadonlyMap<string, string>): string {
   const item = finding.item === undefined ? undefined : (itemNames.get(finding.item) ?? finding.item);

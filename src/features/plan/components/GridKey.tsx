@@ -1,5 +1,5 @@
 import { useTranslation } from 'react-i18next';
-import { FootMark, ForkMark, LozengeMark, PennantMark, RingMark } from '../../../components/marks.tsx';
+import { BeyondMark, FootMark, ForkMark, LozengeMark, PennantMark, RingMark } from '../../../components/marks.tsx';
 
 /** What each mark means. */
 export function GridKey({ note, hasPending = false }: { note: string | null; hasPending?: boolean }) {
@@ -44,6 +44,9 @@ export function GridKey({ note, hasPending = false }: { note: string | null; has
         </li>
         <li className="inline-flex items-center gap-1.5">
           <ForkMark /> {t('key.outside')}
+        </li>
+        <li className="inline-flex items-center gap-1.5">
+          <BeyondMark /> {t('key.beyond')}
         </li>
       </ul>
       {note && <span className="ml-auto">{note}</span>}

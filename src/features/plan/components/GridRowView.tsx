@@ -1,6 +1,6 @@
 import type { Row } from '@tanstack/react-table';
 import { memo, useEffect, useRef, type KeyboardEvent } from 'react';
-import { ForkMark, RingMark } from '../../../components/marks.tsx';
+import { BeyondMark, ForkMark, RingMark } from '../../../components/marks.tsx';
 import { formatNumber } from '../../../lib/format.ts';
 import type { GridColumn } from '../grid-columns.ts';
 import type { CellMarks } from '../line-figures.ts';
@@ -30,6 +30,7 @@ export interface CellWords {
   look: string;
   decision: string;
   outside: string;
+  beyond: string;
   pending: string;
   locked: string;
   gap: string;
@@ -147,6 +148,7 @@ const GridCell = memo(function GridCell(props: GridCellProps) {
     if (marks.isDueAnotherLook) label += `, ${words.look}`;
     if (marks.needsDecision) label += `, ${words.decision}`;
     if (marks.isOutsideRange) label += `, ${words.outside}`;
+    if (marks.isBeyondSeen) label += `, ${words.beyond}`;
     if (marks.isPending) {
       classes += ' is-pending';
       label += `, ${words.pending}`;
@@ -182,6 +184,10 @@ const GridCell = memo(function GridCell(props: GridCellProps) {
           ) : marks?.isOutsideRange ? (
             <span className="plan-mark">
               <ForkMark />
+            </span>
+          ) : marks?.isBeyondSeen ? (
+            <span className="plan-mark">
+              <BeyondMark />
             </span>
           ) : null}
         </>

@@ -374,6 +374,7 @@ export function PlanGrid(props: PlanGridProps) {
       look: t('cell.look'),
       decision: t('cell.decision'),
       outside: t('cell.outside'),
+      beyond: t('cell.beyond'),
       pending: t('cell.pending'),
       locked: t('cell.locked'),
       gap: t('cell.gap'),

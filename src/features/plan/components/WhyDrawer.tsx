@@ -6,7 +6,7 @@ import { scopeHolds, scopesMeet } from '../../../../shared/domain/override-arith
 import { weeksBetween } from '../../../../shared/domain/weeks.ts';
 import { Button } from '../../../components/Button.tsx';
 import { CloseButton } from '../../../components/CloseButton.tsx';
-import { ForkMark, PennantMark, RingMark } from '../../../components/marks.tsx';
+import { BeyondMark, ForkMark, PennantMark, RingMark } from '../../../components/marks.tsx';
 import {
   formatFactor,
   formatInstant,
@@ -21,7 +21,7 @@ import {
 import { useCurrency } from '../../../lib/settings.ts';
 import type { GridColumn } from '../grid-columns.ts';
 import type { GridRow } from '../grid-rows.ts';
-import { findRange, rowOfVersion, type LineFigures, type RowFigures } from '../line-figures.ts';
+import { findRange, listBeyondSeen, rowOfVersion, type LineFigures, type RowFigures } from '../line-figures.ts';
 import type { PendingEdit } from '../pending-edits.ts';
 import { versionsQuery, versionStateQuery } from '../queries.ts';
 import { RangeDrawing } from './RangeDrawing.tsx';
@@ -139,6 +139,11 @@ function PlannedCell({ plan, row, column, figures, lineFigures, pending, describ
             <ForkMark /> {t('why.outside')}
           </p>
         )}
+        {listBeyondSeen(plan, row, week).map((kind) => (
+          <p key={kind}>
+            <BeyondMark /> {t(`why.beyond.${kind}`)}
+          </p>
+        ))}
         {netValue !== null && (
           <p className="text-soft">{t('why.netValue', { value: formatMoney(netValue, currency, 0) })}</p>
         )}
