@@ -69,7 +69,13 @@ export function CalendarGrid({ view, seamAfter, chosen, onChoose }: GridProps) {
                 } ${seamAt === position ? 'border-l-2 border-dashed border-ink' : ''}`}
               >
                 {shortWeekLabel(week)}
-                <span className="block text-[10.5px]/[13px] font-normal text-soft">{formatDate(week)}</span>
+                <span
+                  className="block text-[10.5px]/[13px] font-normal whitespace-nowrap text-soft"
+                  title={formatDate(week)}
+                >
+                  <span className="max-[1439px]:hidden">{formatDate(week)}</span>
+                  <span className="min-[1440px]:hidden">{Number(week.slice(8))}</span>
+                </span>
               </th>
             ))}
           </tr>
