@@ -34,7 +34,9 @@ test('a planner brings in the week, forecasts, overrides and submits', async ({ 
 
   await test.step('the forecast starts after the new week', async () => {
     await goTo(page, 'Plan');
+    await expect(page.getByText('estimates from sales to 2026-W47')).toBeVisible();
     await forecastCategory(page, 'Pantry');
+    await expect(page.getByText('estimates from sales to 2026-W48')).toBeVisible();
     await expect(page.getByText(/planned 2026-W49 to/)).toBeVisible();
     await page.getByRole('link', { name: 'Open the plan of Pasta' }).click();
     await expect(page.getByRole('heading', { name: 'Pasta', level: 1 })).toBeVisible();

@@ -209,7 +209,8 @@ function CategoryPlanView({ plan, planFirstWeek }: { plan: CategoryPlan; planFir
               lines: plan.lines.length,
               first: weekLabel(planFirstWeek),
               last: weekLabel(addWeeks(planFirstWeek, planWeeks - 1)),
-              sales: plan.lastSalesWeek ? weekLabel(plan.lastSalesWeek) : '–',
+              // The week that the forecast read last; newer sales may be in.
+              sales: weekLabel(addWeeks(planFirstWeek, -1)),
             })}{' '}
             {round && (
               <span className={isLate ? 'text-madder' : ''}>

@@ -94,8 +94,10 @@ export function CategoryGlance({ plan }: { plan: CategoryPlan }) {
           </tr>
         </tfoot>
       </Table>
-      {plan.lastSalesWeek && (
-        <p className="mt-2 text-tiny text-soft">{t('glance.note', { week: weekLabel(plan.lastSalesWeek) })}</p>
+      {plan.planFirstWeek && (
+        <p className="mt-2 text-tiny text-soft">
+          {t('glance.note', { week: weekLabel(addWeeks(plan.planFirstWeek, -1)) })}
+        </p>
       )}
     </>
   );
