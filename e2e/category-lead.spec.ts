@@ -18,7 +18,7 @@ test('a category lead adjusts a submitted line, locks it, and unlocks it with a 
   await lockLine(page);
   await expect(target).toHaveAttribute('aria-label', /locked/);
   await typeInto(page, target, '1');
-  await expect(page.getByText(/locked/).first()).toBeVisible();
+  await expect(page.getByText(/is locked( in version|\. A category lead)/).last()).toBeVisible();
   expect(await figureOf(target)).toBe(before + 25);
 
   await page.getByRole('button', { name: 'Unlock weeks' }).click();
